@@ -1,0 +1,1 @@
+"""Settlepoint: size and tune a positioning axis before it exists."""

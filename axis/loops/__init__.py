@@ -1,0 +1,1 @@
+"""Plant, prototypes, loop design, filters, margins and textbook settings."""

@@ -1,0 +1,1 @@
+"""Motor constants and their bases, torque-speed envelope, thermal bodies, drive and DC link."""

@@ -1,0 +1,1 @@
+"""Solids, friction, transmission stages, reflection and compliance."""

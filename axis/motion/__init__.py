@@ -1,0 +1,1 @@
+"""Motion laws, the jerk-limited move, the cycle."""

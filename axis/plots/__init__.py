@@ -1,0 +1,1 @@
+"""Each figure once, as a neutral description drawn for screen or paper."""

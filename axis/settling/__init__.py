@@ -1,0 +1,1 @@
+"""Verdict over the tolerance corners: does the load stay inside the window?"""

@@ -1,0 +1,1 @@
+"""The settings sheet, returned as bytes."""

@@ -1,0 +1,1 @@
+"""The compiled simulation of the axis, its scenario and its record."""

@@ -1,0 +1,1 @@
+"""Demand, checks and the physical bound of a move."""

@@ -1,0 +1,1 @@
+"""Search for loop settings on the simulation."""
