@@ -27,9 +27,7 @@ class Quantity:
     example: str = ""
     symbol: str = ""
     side: str = ""  # "motor" or "load" where confusion would hurt
-    alternatives: tuple[
-        tuple[str, float], ...
-    ] = ()  # other units a data sheet may use: (unit, SI value of one)
+    alternatives: tuple[tuple[str, float], ...] = ()  # other units a data sheet may use: (unit, SI value of one)
 
 
 @dataclass(frozen=True)

@@ -24,9 +24,14 @@ class Head:
         "choice", "Does the load travel in a line or turn", choices=("linear", "rotary"), example='"linear"'
     )
     incline: float = quantity(
-        "rad", "Angle of positive travel above the horizontal", shown="deg", at_least=-1.5707963267948968,
-        at_most=1.5707963267948968, default=0.0, example='"90 deg"',
-    )  # fmt: skip
+        "rad",
+        "Angle of positive travel above the horizontal",
+        shown="deg",
+        at_least=-1.5707963267948968,
+        at_most=1.5707963267948968,
+        default=0.0,
+        example='"90 deg"',
+    )
     ambient: float | None = quantity(
         "K", "Ambient temperature", shown="degC", above=0, default=None, example='"30 degC"'
     )

@@ -29,15 +29,9 @@ class Drive:
     supply_voltage: float | None = quantity(
         "V", "Supply voltage, rms (line-line where three-phase)", above=0, default=None, example='"400 V"'
     )
-    supply_phases: int | None = plain(
-        "count", "Phases of the supply", at_least=1, at_most=3, default=None, example="3"
-    )
-    dc_link_min: float | None = quantity(
-        "V", "Lowest DC-link voltage", above=0, default=None, example='"480 V"'
-    )
-    dc_link_nominal: float | None = quantity(
-        "V", "Nominal DC-link voltage", above=0, default=None, example='"560 V"'
-    )
+    supply_phases: int | None = plain("count", "Phases of the supply", at_least=1, at_most=3, default=None, example="3")
+    dc_link_min: float | None = quantity("V", "Lowest DC-link voltage", above=0, default=None, example='"480 V"')
+    dc_link_nominal: float | None = quantity("V", "Nominal DC-link voltage", above=0, default=None, example='"560 V"')
     dc_link_max: float | None = quantity(
         "V", "DC-link voltage at which the drive trips", above=0, default=None, example='"820 V"'
     )
@@ -75,6 +69,10 @@ class Drive:
         "s", "Period of the position loop", shown="us", above=0, default=None, example='"250 us"'
     )
     computation_delay: float | None = quantity(
-        "s", "From sampling the current to the new voltage", shown="us", at_least=0, default=None,
+        "s",
+        "From sampling the current to the new voltage",
+        shown="us",
+        at_least=0,
+        default=None,
         example='"62.5 us"',
-    )  # fmt: skip
+    )

@@ -21,17 +21,37 @@ class Friction:
         example='"22 N"',
     )
     breakaway: float | None = quantity(
-        "N", "Break-away friction of the load", rotary="N*m", at_least=0, default=None, symbol="F_S", side="load",
+        "N",
+        "Break-away friction of the load",
+        rotary="N*m",
+        at_least=0,
+        default=None,
+        symbol="F_S",
+        side="load",
         example='"31 N"',
-    )  # fmt: skip
+    )
     viscous: float = quantity(
-        "N*s/m", "Viscous friction of the load", rotary="N*m*s/rad", at_least=0, default=0.0, symbol="B", side="load",
+        "N*s/m",
+        "Viscous friction of the load",
+        rotary="N*m*s/rad",
+        at_least=0,
+        default=0.0,
+        symbol="B",
+        side="load",
         example='"45 N*s/m"',
-    )  # fmt: skip
+    )
     stribeck_speed: float | None = quantity(
-        "m/s", "Speed over which break-away friction fades", rotary="rad/s", shown="mm/s", shown_rotary="deg/s",
-        above=0, default=None, symbol="v_S", side="load", example='"4 mm/s"',
-    )  # fmt: skip
+        "m/s",
+        "Speed over which break-away friction fades",
+        rotary="rad/s",
+        shown="mm/s",
+        shown_rotary="deg/s",
+        above=0,
+        default=None,
+        symbol="v_S",
+        side="load",
+        example='"4 mm/s"',
+    )
 
 
 @dataclass(frozen=True)
@@ -48,9 +68,14 @@ class Load:
         example='"38 kg"',
     )
     inertia: float | None = quantity(
-        "kg*m^2", "Inertia of the empty axis about its centre of rotation", above=0, default=None, symbol="J_L",
-        side="load", example='"0.12 kg*m^2"',
-    )  # fmt: skip
+        "kg*m^2",
+        "Inertia of the empty axis about its centre of rotation",
+        above=0,
+        default=None,
+        symbol="J_L",
+        side="load",
+        example='"0.12 kg*m^2"',
+    )
     friction: Friction | None = None
 
     @property
@@ -70,9 +95,14 @@ class Payload:
         "kg", "Mass of the payload", at_least=0, default=None, symbol="m_P", side="load", example='"9 kg"'
     )
     inertia: float | None = quantity(
-        "kg*m^2", "Inertia of the payload about the axis", at_least=0, default=None, symbol="J_P", side="load",
+        "kg*m^2",
+        "Inertia of the payload about the axis",
+        at_least=0,
+        default=None,
+        symbol="J_P",
+        side="load",
         example='"0.02 kg*m^2"',
-    )  # fmt: skip
+    )
 
     @property
     def inertial(self) -> float:

@@ -33,14 +33,21 @@ class Motor:
         example='"rms"',
     )
     voltage_constant: float | None = quantity(
-        "V*s/rad", "Voltage constant, in its stated basis", shown="V/krpm", above=0, default=None, symbol="K_E",
+        "V*s/rad",
+        "Voltage constant, in its stated basis",
+        shown="V/krpm",
+        above=0,
+        default=None,
+        symbol="K_E",
         example='"43.5 V/krpm"',
-    )  # fmt: skip
+    )
     voltage_constant_basis: VoltageBasis | None = plain(
-        "choice", "Basis of the voltage constant",
-        choices=("line-line rms", "line-line peak", "phase rms", "phase peak"), default=None,
+        "choice",
+        "Basis of the voltage constant",
+        choices=("line-line rms", "line-line peak", "phase rms", "phase peak"),
+        default=None,
         example='"line-line rms"',
-    )  # fmt: skip
+    )
     resistance: float | None = quantity(
         "ohm",
         "Winding resistance, in its stated basis",
@@ -50,25 +57,43 @@ class Motor:
         example='"2.6 ohm"',
     )
     inductance: float | None = quantity(
-        "H", "Winding inductance, in its stated basis", shown="mH", above=0, default=None, symbol="L",
+        "H",
+        "Winding inductance, in its stated basis",
+        shown="mH",
+        above=0,
+        default=None,
+        symbol="L",
         example='"9.4 mH"',
-    )  # fmt: skip
+    )
     winding_basis: WindingBasis | None = plain(
-        "choice", "Basis of resistance and inductance", choices=("line-line", "phase"), default=None,
+        "choice",
+        "Basis of resistance and inductance",
+        choices=("line-line", "phase"),
+        default=None,
         example='"line-line"',
-    )  # fmt: skip
+    )
     saturated_inductance: float | None = quantity(
-        "H", "Inductance at peak current, in the winding's basis", shown="mH", above=0, default=None,
+        "H",
+        "Inductance at peak current, in the winding's basis",
+        shown="mH",
+        above=0,
+        default=None,
         example='"7.5 mH"',
-    )  # fmt: skip
+    )
     current_basis: CurrentBasis | None = plain(
         "choice", "Basis of the motor's currents", choices=("rms", "peak"), default=None, example='"rms"'
     )
     pole_pairs: int | None = plain("count", "Pole pairs", at_least=1, default=None, symbol="p", example="4")
     inertia: float | None = quantity(
-        "kg*m^2", "Rotor inertia", shown="kg*cm^2", above=0, default=None, symbol="J_M", side="motor",
+        "kg*m^2",
+        "Rotor inertia",
+        shown="kg*cm^2",
+        above=0,
+        default=None,
+        symbol="J_M",
+        side="motor",
         example='"1.5 kg*cm^2"',
-    )  # fmt: skip
+    )
     rated_torque: float | None = quantity(
         "N*m", "Continuous torque at rated speed", above=0, default=None, symbol="T_N", example='"2.4 N*m"'
     )
@@ -110,9 +135,13 @@ class Motor:
         "K", "Highest winding temperature", shown="degC", above=0, default=None, example='"140 degC"'
     )
     constants_temperature: float | None = quantity(
-        "K", "Temperature at which the constants were measured", shown="degC", above=0, default=None,
+        "K",
+        "Temperature at which the constants were measured",
+        shown="degC",
+        above=0,
+        default=None,
         example='"20 degC"',
-    )  # fmt: skip
+    )
     winding_housing: float | None = quantity(
         "K/W", "Thermal resistance from winding to housing", above=0, default=None, example='"0.35 K/W"'
     )

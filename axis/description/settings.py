@@ -12,9 +12,7 @@ from axis.units import plain, quantity
 class CurrentLoop:
     """PI current controller, in q-axis peak quantities."""
 
-    kp: float = quantity(
-        "V/A", "Proportional gain of the current loop", above=0, symbol="K_pi", example='"22 V/A"'
-    )
+    kp: float = quantity("V/A", "Proportional gain of the current loop", above=0, symbol="K_pi", example='"22 V/A"')
     ti: float = quantity("s", "Integral time of the current loop", shown="ms", above=0, example='"4.7 ms"')
 
 
@@ -23,12 +21,14 @@ class VelocityLoop:
     """PI velocity controller at the motor shaft."""
 
     kp: float = quantity(
-        "N*m*s/rad", "Proportional gain of the velocity loop", above=0, symbol="K_p", side="motor",
+        "N*m*s/rad",
+        "Proportional gain of the velocity loop",
+        above=0,
+        symbol="K_p",
+        side="motor",
         example='"1.9 N*m*s/rad"',
-    )  # fmt: skip
-    ti: float = quantity(
-        "s", "Integral time of the velocity loop", shown="ms", above=0, symbol="T_n", example='"6 ms"'
     )
+    ti: float = quantity("s", "Integral time of the velocity loop", shown="ms", above=0, symbol="T_n", example='"6 ms"')
     setpoint_weight: float = plain(
         "ratio",
         "Set-point weight of the velocity loop",
@@ -39,9 +39,14 @@ class VelocityLoop:
         example="0.4",
     )
     filter: float = quantity(
-        "s", "Time constant of the velocity filter", shown="ms", at_least=0, default=0.0, symbol="T_f",
+        "s",
+        "Time constant of the velocity filter",
+        shown="ms",
+        at_least=0,
+        default=0.0,
+        symbol="T_f",
         example='"0.2 ms"',
-    )  # fmt: skip
+    )
 
 
 @dataclass(frozen=True)
@@ -49,18 +54,20 @@ class PositionLoop:
     """Proportional position controller."""
 
     kv: float = quantity(
-        "1/s", "Position-loop gain", above=0, symbol="K_v", example='"85 1/s"',
+        "1/s",
+        "Position-loop gain",
+        above=0,
+        symbol="K_v",
+        example='"85 1/s"',
         alternatives=(("m/min/mm", 1000.0 / 60.0),),
-    )  # fmt: skip
+    )
 
 
 @dataclass(frozen=True)
 class Feedforward:
     """Shares of the move's own velocity and acceleration torque that are fed forward."""
 
-    velocity: float = plain(
-        "ratio", "Velocity feedforward", at_least=0, at_most=2, default=1.0, example="1.0"
-    )
+    velocity: float = plain("ratio", "Velocity feedforward", at_least=0, at_most=2, default=1.0, example="1.0")
     torque: float = plain("ratio", "Torque feedforward", at_least=0, at_most=2, default=0.0, example="0.95")
 
 
@@ -69,12 +76,8 @@ class TorqueFilter:
     """A filter in the torque path: low-pass of first order, or notch of finite depth."""
 
     kind: Literal["lowpass", "notch"] = plain("choice", "Kind of filter", choices=("lowpass", "notch"))
-    frequency: float = quantity(
-        "rad/s", "Corner or centre frequency", shown="Hz", above=0, example='"210 Hz"'
-    )
-    width: float | None = quantity(
-        "rad/s", "Width of the notch", shown="Hz", above=0, default=None, example='"60 Hz"'
-    )
+    frequency: float = quantity("rad/s", "Corner or centre frequency", shown="Hz", above=0, example='"210 Hz"')
+    width: float | None = quantity("rad/s", "Width of the notch", shown="Hz", above=0, default=None, example='"60 Hz"')
     depth: float | None = plain(
         "ratio",
         "Gain that is left at the centre of the notch",
@@ -95,6 +98,12 @@ class Loops:
     feedforward: Feedforward = Feedforward()
     filters: tuple[TorqueFilter, ...] = ()
     move_jerk: tuple[float, ...] | None = quantity(
-        "m/s^3", "Jerk limit of each move; overrides the move's own", rotary="rad/s^3", shown_rotary="deg/s^3",
-        above=0, default=None, side="load", example='["300 m/s^3"]',
-    )  # fmt: skip
+        "m/s^3",
+        "Jerk limit of each move; overrides the move's own",
+        rotary="rad/s^3",
+        shown_rotary="deg/s^3",
+        above=0,
+        default=None,
+        side="load",
+        example='["300 m/s^3"]',
+    )

@@ -14,17 +14,29 @@ class Gearbox:
     kind: str = "gearbox"
     use: str | None = plain("text", "Row of a gearbox catalogue", default=None, example='"DG-064-05"')
     ratio: float | None = plain(
-        "ratio", "Input speed over output speed; negative where the output turns the other way", default=None,
-        symbol="i", example="3",
-    )  # fmt: skip
+        "ratio",
+        "Input speed over output speed; negative where the output turns the other way",
+        default=None,
+        symbol="i",
+        example="3",
+    )
     inertia: float | None = quantity(
-        "kg*m^2", "Inertia of the gearbox at its input", shown="kg*cm^2", at_least=0, default=None,
+        "kg*m^2",
+        "Inertia of the gearbox at its input",
+        shown="kg*cm^2",
+        at_least=0,
+        default=None,
         example='"0.3 kg*cm^2"',
-    )  # fmt: skip
+    )
     efficiency: float | None = plain(
-        "ratio", "Efficiency while the motor drives the load", above=0, at_most=1, default=None, symbol="η",
+        "ratio",
+        "Efficiency while the motor drives the load",
+        above=0,
+        at_most=1,
+        default=None,
+        symbol="η",
         example="0.96",
-    )  # fmt: skip
+    )
     efficiency_back: float | None = plain(
         "ratio",
         "Efficiency while the load drives the motor",
@@ -34,13 +46,23 @@ class Gearbox:
         example="0.95",
     )
     stiffness: float | None = quantity(
-        "N*m/rad", "Torsional stiffness at the output", shown="N*m/arcmin", above=0, default=None, symbol="k",
+        "N*m/rad",
+        "Torsional stiffness at the output",
+        shown="N*m/arcmin",
+        above=0,
+        default=None,
+        symbol="k",
         example='"9 N*m/arcmin"',
-    )  # fmt: skip
+    )
     damping_ratio: float | None = plain(
-        "ratio", "Damping ratio of the stage's spring against the load", at_least=0, at_most=1, default=None,
-        symbol="ζ", example="0.02",
-    )  # fmt: skip
+        "ratio",
+        "Damping ratio of the stage's spring against the load",
+        at_least=0,
+        at_most=1,
+        default=None,
+        symbol="ζ",
+        example="0.02",
+    )
     drag: float | None = quantity(
         "N*m", "Load-free drag torque at the input", at_least=0, default=None, example='"0.06 N*m"'
     )
@@ -63,22 +85,23 @@ class BallScrew:
     lead: float | None = quantity(
         "m", "Lead of the screw", shown="mm", above=0, default=None, symbol="h", example='"20 mm"'
     )
-    left_hand: bool = plain(
-        "flag", "Left-hand thread: positive rotation moves the nut backwards", default=False
-    )
+    left_hand: bool = plain("flag", "Left-hand thread: positive rotation moves the nut backwards", default=False)
     diameter: float | None = quantity(
         "m", "Diameter of the screw", shown="mm", above=0, default=None, symbol="d", example='"25 mm"'
     )
-    length: float | None = quantity(
-        "m", "Length of the screw", shown="mm", above=0, default=None, example='"1.1 m"'
-    )
+    length: float | None = quantity("m", "Length of the screw", shown="mm", above=0, default=None, example='"1.1 m"')
     inertia: float | None = quantity(
         "kg*m^2", "Inertia of the screw", shown="kg*cm^2", at_least=0, default=None, example='"1.1 kg*cm^2"'
     )
     efficiency: float | None = plain(
-        "ratio", "Efficiency while the motor drives the load", above=0, at_most=1, default=None, symbol="η",
+        "ratio",
+        "Efficiency while the motor drives the load",
+        above=0,
+        at_most=1,
+        default=None,
+        symbol="η",
         example="0.92",
-    )  # fmt: skip
+    )
     efficiency_back: float | None = plain(
         "ratio",
         "Efficiency while the load drives the motor",
@@ -88,13 +111,23 @@ class BallScrew:
         example="0.90",
     )
     stiffness: float | None = quantity(
-        "N/m", "Axial stiffness of screw, nut and bearings at the nut", shown="N/um", above=0, default=None, symbol="k",
+        "N/m",
+        "Axial stiffness of screw, nut and bearings at the nut",
+        shown="N/um",
+        above=0,
+        default=None,
+        symbol="k",
         example='"60 N/um"',
-    )  # fmt: skip
+    )
     damping_ratio: float | None = plain(
-        "ratio", "Damping ratio of the stage's spring against the load", at_least=0, at_most=1, default=None,
-        symbol="ζ", example="0.02",
-    )  # fmt: skip
+        "ratio",
+        "Damping ratio of the stage's spring against the load",
+        at_least=0,
+        at_most=1,
+        default=None,
+        symbol="ζ",
+        example="0.02",
+    )
     drag: float | None = quantity(
         "N*m",
         "Load-free drag torque of nut and bearings at the screw",
