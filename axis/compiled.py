@@ -1,0 +1,69 @@
+"""The one gate to numba: compiles a plain function of numbers and keeps the machine code for the next start.
+
+The cache folder carries a digest of the sources that may be compiled, because numba looks only at the file of the
+outermost function: a changed formula in another file would silently go on giving its old result. Where the
+package's own folder cannot be written, the user's cache folder serves; where that cannot either, every start compiles.
+With SETTLEPOINT_UNCOMPILED=1 everything stays plain Python: slow, and the same numbers.
+"""
+
+from __future__ import annotations
+
+import hashlib
+import os
+import tempfile
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any, TypeVar
+
+F = TypeVar("F", bound=Callable[..., Any])
+
+ROOMS = ("mechanics", "motion", "machine", "sizing", "loops", "simulation", "tuning")
+UNCOMPILED = os.environ.get("SETTLEPOINT_UNCOMPILED", "") == "1"
+
+
+def sources_digest(package: Path) -> str:
+    """Digest of every source that may end up in machine code."""
+    digest = hashlib.sha256()
+    for room in ROOMS:
+        for source in sorted((package / room).glob("*.py")):
+            digest.update(source.name.encode() + b"\0" + source.read_bytes() + b"\0")
+    return digest.hexdigest()[:16]
+
+
+def cache_folder(candidates: list[Path]) -> Path | None:
+    """The first folder that can be made and written; None where there is none."""
+    for folder in candidates:
+        try:
+            folder.mkdir(parents=True, exist_ok=True)
+            with tempfile.TemporaryFile(dir=folder):
+                return folder
+        except OSError:
+            continue
+    return None
+
+
+def _gate() -> Callable[[Any], Any]:
+    if UNCOMPILED:
+        return lambda function: function
+    import numba
+    from platformdirs import user_cache_path
+
+    package = Path(__file__).parent
+    name = f"compiled-{sources_digest(package)}"
+    folder = cache_folder([package / "__pycache__" / name, user_cache_path("settlepoint") / name])
+    if folder is not None:
+        settings: Any = numba.config
+        settings.CACHE_DIR = str(folder)
+    return numba.njit(cache=folder is not None, nogil=True)
+
+
+_compiler = _gate()
+
+
+def compiled(function: F) -> F:
+    """Compile a function of numbers and arrays at its first call; no fastmath, so that the digits stay the same."""
+    room = function.__module__.split(".")[1:2]
+    if room and room[0] not in ROOMS and function.__module__.startswith("axis."):
+        raise ValueError(f"{function.__module__} is outside the sources whose changes the cache notices: {ROOMS}")
+    result: F = _compiler(function)
+    return result
