@@ -27,7 +27,7 @@ class Problem:
             text += f"{self.value} "
         text += self.rule
         if self.example:
-            text += f", for example {self.example}"
+            text += f" For example {self.example}" if self.rule.endswith("?") else f", for example {self.example}"
         return text
 
 

@@ -49,5 +49,5 @@ class Caution:
 
 def worst(verdicts: Iterable[Verdict]) -> Verdict:
     """The verdict of the whole: fail > not evaluated > pass; nothing checked at all is `not evaluated`."""
-    top = max(verdicts, key=_RANK.__getitem__, default="not evaluated")
-    return "not evaluated" if top == "not applicable" else top
+    ranked = sorted(verdicts, key=_RANK.__getitem__)
+    return "not evaluated" if not ranked or ranked[-1] == "not applicable" else ranked[-1]
