@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 DEFAULT_SEED = 1
 DEFAULT_RUNS = 12_000
 
+NO_LOOPS = "whether it settles is not evaluated: the file has no [loops]; settlepoint tune --write puts them there"
+
 Progress = Callable[[float, str], None]
 
 
@@ -35,12 +37,13 @@ class Study:
     sizing: Sizing | None = None
     tuned: Tuned | None = None
     settled: Settled | None = None
+    unevaluated: str = ""  # what was asked and could not be done, and what to do about it
 
     @property
     def verdict(self) -> Verdict:
-        """The worst of what has been computed."""
-        done = (part.verdict for part in (self.sizing, self.tuned, self.settled) if part is not None)
-        return worst(done)
+        """The worst of what has been asked."""
+        done = [part.verdict for part in (self.sizing, self.tuned, self.settled) if part is not None]
+        return worst([*done, "not evaluated"] if self.unevaluated else done)
 
 
 def load(path: str | Path, catalogues: str | Path | None = None) -> Study:
@@ -74,7 +77,9 @@ def tune(
         tuned = tune_axis(study.axis, seed=seed, runs=runs, progress=progress, executor=workers)
     stated = replace(study.document.axis, loops=tuned.loops)
     document = replace(study.document, axis=stated)
-    return replace(study, document=document, axis=complete(stated), tuned=tuned, settled=tuned.result.settled)
+    return replace(
+        study, document=document, axis=complete(stated), tuned=tuned, settled=tuned.result.settled, unevaluated=""
+    )
 
 
 def check(study: Study, progress: Progress | None = None, executor: Executor | None = None) -> Study:
@@ -83,7 +88,7 @@ def check(study: Study, progress: Progress | None = None, executor: Executor | N
 
     loops = study.document.axis.loops
     if loops is None:
-        return study
+        return replace(study, unevaluated=NO_LOOPS)
     with _workers(executor) as workers:
         return replace(study, settled=check_axis(study.axis, loops, progress, workers))
 

@@ -1,0 +1,5 @@
+"""`python -m axis` is `settlepoint`."""
+
+from axis.cli import main
+
+main()
