@@ -98,8 +98,8 @@ def size(file: Path, catalogue: Path | None, as_json: bool) -> int:
 
     Example: settlepoint size my-axis.toml
     """
-    from axis.sheet.terminal import size_text
     from axis.sheet.as_json import size_json
+    from axis.sheet.terminal import size_text
     from axis.study import load
     from axis.study import size as size_study
 
@@ -121,8 +121,8 @@ def tune(file: Path, catalogue: Path | None, as_json: bool, seed: int | None, ru
     Example: settlepoint tune my-axis.toml --write
     """
     from axis.files.write import save_loops
-    from axis.sheet.terminal import tune_text
     from axis.sheet.as_json import tune_json
+    from axis.sheet.terminal import tune_text
     from axis.study import load
 
     with _progress() as progress:
@@ -143,8 +143,8 @@ def check(file: Path, catalogue: Path | None, as_json: bool) -> int:
 
     Example: settlepoint check my-axis.toml
     """
-    from axis.sheet.terminal import check_text
     from axis.sheet.as_json import check_json
+    from axis.sheet.terminal import check_text
     from axis.study import check as check_study
     from axis.study import load
 
