@@ -12,7 +12,7 @@ from axis.description.moves import Move, Window
 from axis.description.settings import Loops
 from axis.description.transmission import Stage
 from axis.description.wishes import Tolerance, Tuning
-from axis.units import plain, quantity
+from axis.units import plain, quantity, table
 
 
 @dataclass(frozen=True)
@@ -42,14 +42,14 @@ class Head:
 class Axis:
     """One stated axis. `loops` is None until settings were typed or tuned."""
 
-    head: Head  # [axis] in the file
-    load: Load
-    motor: Motor
-    drive: Drive
-    window: Window
-    moves: tuple[Move, ...]  # [[move]]
-    transmission: tuple[Stage, ...] = ()  # [[transmission]]
-    payloads: tuple[Payload, ...] = ()  # [[payload]]
+    head: Head = table("axis")
+    load: Load = table("load")
+    motor: Motor = table("motor")
+    drive: Drive = table("drive")
+    window: Window = table("window")
+    moves: tuple[Move, ...] = table("move")
+    transmission: tuple[Stage, ...] = ()
+    payloads: tuple[Payload, ...] = table("payload", default=())
     tolerance: Tolerance = Tolerance()
     tuning: Tuning = Tuning()
     loops: Loops | None = None

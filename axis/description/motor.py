@@ -11,6 +11,14 @@ CurrentBasis = Literal["rms", "peak"]
 VoltageBasis = Literal["line-line rms", "line-line peak", "phase rms", "phase peak"]
 WindingBasis = Literal["line-line", "phase"]
 
+# The key that says the basis → the values that mean nothing without it.
+BASES = {
+    "torque_constant_basis": ("torque_constant",),
+    "voltage_constant_basis": ("voltage_constant",),
+    "winding_basis": ("resistance", "inductance", "saturated_inductance"),
+    "current_basis": ("rated_current", "stall_current", "peak_current"),
+}
+
 
 @dataclass(frozen=True)
 class Motor:

@@ -11,7 +11,7 @@ from axis.units import plain, quantity
 class Gearbox:
     """A gear stage. Inertia, drag and speed limit at its input; stiffness, damping and torque limits at its output."""
 
-    kind: str = "gearbox"
+    kind: str = plain("choice", "Kind of stage", choices=("gearbox",), default="gearbox", example='"gearbox"')
     use: str | None = plain("text", "Row of a gearbox catalogue", default=None, example='"DG-064-05"')
     ratio: float | None = plain(
         "ratio",
@@ -81,7 +81,7 @@ class Gearbox:
 class BallScrew:
     """A ball screw. Inertia, drag and speed limit at the screw; stiffness, damping and force limits at the nut."""
 
-    kind: str = "ball_screw"
+    kind: str = plain("choice", "Kind of stage", choices=("ball_screw",), default="ball_screw", example='"ball_screw"')
     lead: float | None = quantity(
         "m", "Lead of the screw", shown="mm", above=0, default=None, symbol="h", example='"20 mm"'
     )
