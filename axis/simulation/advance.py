@@ -1,0 +1,135 @@
+"""The axis over one segment of a current period, voltage held: one exact matrix where friction is constant, else series."""
+
+from __future__ import annotations
+
+import numpy as np
+import numpy.typing as npt
+
+from axis.compiled import compiled
+from axis.simulation.observer import observe
+from axis.simulation.plant import (
+    ANGLE,
+    CURRENT,
+    DASHPOT,
+    DRAG,
+    FAST,
+    HOLDING,
+    K_TORQUE,
+    LOAD_SPEED,
+    MOTOR_DRAG,
+    MOTOR_SPEED,
+    PULL,
+    RIGID,
+    SLIDING,
+    SPRING,
+    STATE_SIZE,
+    TWIST,
+)
+from axis.simulation.series import series_step
+
+Array = npt.NDArray[np.float64]
+Whole = npt.NDArray[np.int64]
+
+BULGE = 4.0 / 27.0  # of slope times step: the most that a cubic rises above its ends
+EVENTS = 64  # stops and starts looked for in one segment; a real axis shows a handful
+
+
+@compiled
+def by_series(
+    x: Array, senses: Whole, p: Array, voltage: float, step: float, o: Array, time: float, rest_offset: float, c: Array
+) -> None:
+    """Advance through reversals, sticking, breaking away and Stribeck friction; the observer sees every piece."""
+    done = 0.0
+    pieces = 0
+    while done < step:
+        y, v = x[ANGLE] - x[TWIST] + rest_offset, x[LOAD_SPEED]
+        left = step - done
+        taken = series_step(x, senses, p, voltage, left, pieces < EVENTS, c)
+        if taken >= left:
+            taken = left
+        observe(o, time + done, taken, y, v, x[ANGLE] - x[TWIST] + rest_offset, x[LOAD_SPEED])
+        done = step if taken == left else done + taken
+        pieces += 1
+
+
+@compiled
+def torque_on_load(p: Array, speed: float, twist: float, load: float, current: float) -> float:
+    """Torque on the load without its Coulomb friction."""
+    if p[RIGID] != 0.0:
+        return p[K_TORQUE] * current - p[DRAG] * load - p[PULL]
+    return p[SPRING] * twist + p[DASHPOT] * (speed - load) - p[DRAG] * load - p[PULL]
+
+
+@compiled
+def advance(
+    x: Array,
+    senses: Whole,
+    p: Array,
+    matrices: Array,
+    segment: int,
+    voltage: float,
+    step: float,
+    o: Array,
+    time: float,
+    rest_offset: float,
+    c: Array,
+    new: Array,
+) -> None:
+    """Advance the state over one segment of `step` [s] from `time` [s] of the move.
+
+    One matrix is exact as long as no side starts or stops and the load is too fast for Stribeck friction or has none.
+    """
+    speed, twist, load, current = x[MOTOR_SPEED], x[TWIST], x[LOAD_SPEED], x[CURRENT]
+    motor_sense, load_sense = senses[0], senses[1]
+    holding, drag = p[HOLDING], p[MOTOR_DRAG]
+    plain = True
+    before = 0.0
+    if holding > 0.0:
+        if load_sense == 0:
+            before = abs(torque_on_load(p, speed, twist, load, current))
+            plain = before <= holding
+        else:
+            plain = load * load_sense > p[FAST]
+    if drag > 0.0 and plain:
+        if motor_sense == 0:
+            spring = p[SPRING] * twist + p[DASHPOT] * (speed - load)
+            plain = abs(p[K_TORQUE] * current - spring) <= drag
+        else:
+            plain = speed * motor_sense > 0.0
+    if not plain:
+        by_series(x, senses, p, voltage, step, o, time, rest_offset, c)
+        return
+    mode = (2 if drag > 0.0 and motor_sense == 0 else 0) + (1 if holding > 0.0 and load_sense == 0 else 0)
+    on_motor = drag * motor_sense
+    on_load = p[SLIDING] * load_sense + p[PULL]
+    for row in range(STATE_SIZE):
+        new[row] = (
+            matrices[segment, mode, row, 0] * speed
+            + matrices[segment, mode, row, 1] * twist
+            + matrices[segment, mode, row, 2] * load
+            + matrices[segment, mode, row, 3] * current
+            + matrices[segment, mode, row, 4] * voltage
+            + matrices[segment, mode, row, 5] * on_motor
+            + matrices[segment, mode, row, 6] * on_load
+        )
+    new_speed, new_twist, new_load, new_current = new[MOTOR_SPEED], new[TWIST], new[LOAD_SPEED], new[CURRENT]
+    if holding > 0.0:
+        if load_sense == 0:
+            after = abs(torque_on_load(p, new_speed, new_twist, new_load, new_current))
+            bulge = BULGE * step * p[SPRING] * max(abs(speed), abs(new_speed))
+            plain = max(before, after) + bulge <= holding
+        else:
+            plain = new_load * load_sense > p[FAST]
+    if drag > 0.0 and plain:
+        if motor_sense == 0:
+            spring = p[SPRING] * new_twist + p[DASHPOT] * (new_speed - new_load)
+            plain = abs(p[K_TORQUE] * new_current - spring) <= drag
+        else:
+            plain = new_speed * motor_sense > 0.0
+    if not plain:
+        by_series(x, senses, p, voltage, step, o, time, rest_offset, c)
+        return
+    y = x[ANGLE] - twist + rest_offset
+    x[ANGLE] += new[ANGLE]
+    x[MOTOR_SPEED], x[TWIST], x[LOAD_SPEED], x[CURRENT] = new_speed, new_twist, new_load, new_current
+    observe(o, time, step, y, load, x[ANGLE] - new_twist + rest_offset, new_load)

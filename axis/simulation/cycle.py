@@ -1,0 +1,386 @@
+"""The compiled run: the cycle of moves, repeated until it repeats itself, and what is seen of each move."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+import numpy.typing as npt
+
+from axis.compiled import compiled
+from axis.motion.pieces import evaluate_piece
+from axis.simulation.advance import advance
+from axis.simulation.controller import (
+    BUCKET,
+    COMMAND,
+    DRIVE_SIZE,
+    SET_ACCELERATION,
+    SET_POSITION,
+    SET_SPEED,
+    TRIP,
+    VOLTAGE,
+    current_sample,
+    fill_bucket,
+    hold_still,
+    measured,
+    position_sample,
+    velocity_sample,
+)
+from axis.simulation.layout import (
+    BUCKET_PEAK,
+    COMPUTATION_DELAY,
+    COUNT_ANGLE,
+    CURRENT_PERIOD,
+    CURRENT_RIPPLE,
+    CURRENT_SATURATED,
+    CURRENT_SQUARE,
+    DIRECTION,
+    DURATION,
+    FIGURES_SIZE,
+    FOLLOWING_ERROR,
+    OVERSHOOT,
+    PEAK_CURRENT_SEEN,
+    PEAK_SPEED,
+    PEAK_TORQUE,
+    PERIODS,
+    POSITION_EVERY,
+    REST_ERROR,
+    SIGNAL,
+    SIGNAL_EARLY,
+    SIGNAL_LAST,
+    SIGNAL_LOSSES,
+    START,
+    TARGET,
+    TIME_TO_WINDOW,
+    TRACE_COMMAND,
+    TRACE_CURRENT,
+    TRACE_LOAD_POSITION,
+    TRACE_LOAD_SPEED,
+    TRACE_MOTOR_ANGLE,
+    TRACE_MOTOR_SPEED,
+    TRACE_SETPOINT,
+    TRACE_TIME,
+    TRACE_TWIST,
+    TRACE_VOLTAGE,
+    TRIPPED,
+    UNDERSHOOT,
+    VELOCITY_EVERY,
+    VOLTAGE_SATURATED,
+    WINDOW,
+    WINDOW_SAMPLES,
+)
+from axis.simulation.observer import AIM, BAND, BEYOND, LAST_OUTSIDE, OBSERVER_SIZE, SENSE, SHORT
+from axis.simulation.plant import (
+    ANGLE,
+    COLUMNS,
+    CURRENT,
+    HOLDING,
+    K_TORQUE,
+    LOAD_SPEED,
+    MODES,
+    MOTOR_DRAG,
+    MOTOR_SPEED,
+    PREPARED_SIZE,
+    PULL,
+    RIGID,
+    SEGMENTS,
+    SPRING,
+    STATE_SIZE,
+    TWIST,
+    prepare,
+    transitions,
+)
+from axis.simulation.series import SERIES_ROWS, TERMS
+
+Array = npt.NDArray[np.float64]
+Whole = npt.NDArray[np.int64]
+
+on_piece = compiled(evaluate_piece)
+
+SAME = 0.01  # of the window: records closer than this are one
+KEPT = 5  # cycles whose worst counts where no two agree
+
+
+@compiled
+def set_point(pieces: Array, first: int, last: int, time: float, u: Array, start: float, target: float) -> None:
+    """Put the set-point at `time` [s] of a move into the drive: exact on its cubic, at rest on the target afterwards."""
+    since = time
+    for n in range(first, last):
+        if since < pieces[n, 0]:
+            position, speed, acceleration = on_piece(since, pieces[n, 1], pieces[n, 2], pieces[n, 3], pieces[n, 4])
+            u[SET_POSITION] = start + position
+            u[SET_SPEED] = speed
+            u[SET_ACCELERATION] = acceleration
+            return
+        since -= pieces[n, 0]
+    u[SET_POSITION] = target
+    u[SET_SPEED] = 0.0
+    u[SET_ACCELERATION] = 0.0
+
+
+@compiled
+def clear(figures: Array) -> None:
+    """No move has been seen yet."""
+    for f in range(FIGURES_SIZE):
+        figures[f] = 0.0
+    figures[SIGNAL] = math.inf
+    figures[SIGNAL_LAST] = math.inf
+
+
+@compiled
+def signal(figures: Array, inside: bool, waited: int, needed: int, time: float) -> int:
+    """The drive's in-position signal at one position sample; returns the samples it has been inside, −1 outside."""
+    if not inside:
+        if waited >= needed:
+            figures[SIGNAL_LOSSES] += 1.0
+        return -1
+    waited += 1
+    if waited == needed:
+        if math.isinf(figures[SIGNAL]):
+            figures[SIGNAL] = time
+        figures[SIGNAL_LAST] = time
+    return waited
+
+
+@compiled
+def conclude(figures: Array, o: Array, y: float, constant: float) -> None:
+    """Take over what the observer kept, at the end of the dwell."""
+    outside = abs(y - o[AIM]) > o[BAND]
+    figures[TIME_TO_WINDOW] = math.inf if outside else o[LAST_OUTSIDE]
+    figures[OVERSHOOT] = o[BEYOND]
+    figures[UNDERSHOOT] = o[SHORT]
+    figures[REST_ERROR] = y - o[AIM]
+    figures[PEAK_TORQUE] = constant * figures[PEAK_CURRENT_SEEN]
+    if math.isinf(figures[SIGNAL]):
+        figures[SIGNAL_EARLY] = -math.inf
+    else:
+        figures[SIGNAL_EARLY] = figures[TIME_TO_WINDOW] - figures[SIGNAL]
+
+
+@compiled
+def write_trace(trace: Array, row: int, time: float, setpoint: float, x: Array, u: Array, rest_offset: float) -> None:
+    """One row of the trace."""
+    trace[row, TRACE_TIME] = time
+    trace[row, TRACE_SETPOINT] = setpoint
+    trace[row, TRACE_MOTOR_ANGLE] = x[ANGLE]
+    trace[row, TRACE_MOTOR_SPEED] = x[MOTOR_SPEED]
+    trace[row, TRACE_TWIST] = x[TWIST]
+    trace[row, TRACE_LOAD_SPEED] = x[LOAD_SPEED]
+    trace[row, TRACE_CURRENT] = x[CURRENT]
+    trace[row, TRACE_VOLTAGE] = u[VOLTAGE]
+    trace[row, TRACE_COMMAND] = u[COMMAND]
+    trace[row, TRACE_LOAD_POSITION] = x[ANGLE] - x[TWIST] + rest_offset
+
+
+@compiled
+def run_move(
+    x: Array,
+    senses: Whole,
+    u: Array,
+    p: Array,
+    matrices: Array,
+    limits: Array,
+    frame: Array,
+    gains: Array,
+    pieces: Array,
+    first: int,
+    last: int,
+    move: Array,
+    base: float,
+    rest_offset: float,
+    record: Array,
+    trace: Array,
+    trace_row: int,
+    figures: Array,
+    o: Array,
+    c: Array,
+    new: Array,
+) -> float:
+    """Run one move with its dwell; returns the largest difference [rad] of the load from the record, which it replaces."""
+    period = frame[CURRENT_PERIOD]
+    velocity_every, position_every = int(frame[VELOCITY_EVERY]), int(frame[POSITION_EVERY])
+    wait = frame[COMPUTATION_DELAY]
+    rest = period - wait
+    target, start = base + move[TARGET], base + move[START]
+    needed = int(frame[WINDOW_SAMPLES])
+    samples = int(move[PERIODS]) * position_every * velocity_every
+    quiet = period * samples - 0.25 * (period * samples - move[DURATION])
+    clear(figures)
+    for n in range(OBSERVER_SIZE):
+        o[n] = 0.0
+    o[AIM], o[BAND], o[SENSE] = target, frame[WINDOW], move[DIRECTION]
+    u[TRIP] = 0.0
+    waited = -1
+    difference = 0.0
+    low, high = math.inf, -math.inf
+    k = 0
+    tracing = trace.shape[0] > 0
+    for n in range(int(move[PERIODS])):
+        time = k * period
+        angle = measured(x[ANGLE], limits[COUNT_ANGLE])
+        set_point(pieces, first, last, time, u, start, target)
+        position_sample(u, gains, angle)
+        figures[FOLLOWING_ERROR] = max(figures[FOLLOWING_ERROR], abs(u[SET_POSITION] - angle))
+        y = x[ANGLE] - x[TWIST] + rest_offset
+        difference = max(difference, abs(y - base - record[n]))
+        record[n] = y - base
+        if time >= move[DURATION]:
+            waited = signal(figures, abs(angle - target) <= frame[WINDOW], waited, needed, time)
+        if not abs(y) < math.inf:
+            return math.inf
+        for _ in range(position_every):
+            angle = measured(x[ANGLE], limits[COUNT_ANGLE])
+            if velocity_sample(u, gains, frame, limits, angle):
+                figures[CURRENT_SATURATED] += velocity_every * period
+            for _ in range(velocity_every):
+                time = k * period
+                before = u[VOLTAGE]
+                current = x[CURRENT]
+                if current_sample(u, gains, limits, p, x[MOTOR_SPEED], current):
+                    figures[VOLTAGE_SATURATED] += period
+                fill_bucket(u, limits, current, period)
+                figures[BUCKET_PEAK] = max(figures[BUCKET_PEAK], u[BUCKET])
+                figures[PEAK_CURRENT_SEEN] = max(figures[PEAK_CURRENT_SEEN], abs(current))
+                figures[PEAK_SPEED] = max(figures[PEAK_SPEED], abs(x[MOTOR_SPEED]))
+                figures[CURRENT_SQUARE] += current * current * period
+                if time >= quiet:
+                    low, high = min(low, current), max(high, current)
+                if tracing:
+                    write_trace(trace, trace_row + k, time, u[SET_POSITION], x, u, rest_offset)
+                if wait > 0.0:
+                    advance(x, senses, p, matrices, 0, before, wait, o, time, rest_offset, c, new)
+                if rest > 0.0:
+                    advance(x, senses, p, matrices, 1, u[VOLTAGE], rest, o, time + wait, rest_offset, c, new)
+                k += 1
+    figures[TRIPPED] = u[TRIP]
+    figures[CURRENT_RIPPLE] = max(high - low, 0.0)
+    conclude(figures, o, x[ANGLE] - x[TWIST] + rest_offset, p[K_TORQUE])
+    return difference
+
+
+@compiled
+def diverge(figures: Array) -> None:
+    """An unstable loop has no figures."""
+    for m in range(figures.shape[0]):
+        for f in range(FIGURES_SIZE):
+            figures[m, f] = math.inf
+
+
+@compiled
+def keep_worst(kept: Array, first: int, count: int, figures: Array) -> None:
+    """The worst of the kept cycles, figure by figure; of rest errors the larger in size, of signals the latest."""
+    for m in range(figures.shape[0]):
+        for f in range(FIGURES_SIZE):
+            worst = kept[first, m, f]
+            for n in range(first + 1, first + count):
+                other = kept[n, m, f]
+                if (abs(other) > abs(worst)) if f == REST_ERROR else (other > worst):
+                    worst = other
+            figures[m, f] = worst
+
+
+@compiled
+def simulate(
+    plants: Array,
+    limits: Array,
+    frame: Array,
+    gains: Array,
+    pieces: Array,
+    first_piece: Whole,
+    moves: Array,
+    max_cycles: int,
+    figures: Array,
+    trace: Array,
+    rise: Array,
+) -> int:
+    """Run the cycle until two successive records agree; figures [moves, FIGURES_SIZE] are the result.
+
+    Parameters
+        plants: one row a move; units as in `layout`
+        limits: of the drive
+        frame: rates, ratio and window
+        gains: settings
+        pieces: of all moves, at the shaft
+        first_piece: where each move's pieces begin
+        moves: one row a move
+        max_cycles: after which the worst of the last five counts
+        figures: result
+        trace: result, one row a current sample of the last cycle; none are kept where it has no rows
+        rise [A²·s]: result, of the bucket over the last cycle
+    Returns the cycles run; negative where no two agreed; 0 where the loop diverged
+    Source: [own]
+    """
+    count = moves.shape[0]
+    prepared = np.zeros((count, PREPARED_SIZE))
+    matrices = np.zeros((count, SEGMENTS, MODES, STATE_SIZE, COLUMNS))
+    total = 0
+    for m in range(count):
+        total += int(moves[m, PERIODS])
+        prepare(plants[m], prepared[m])
+        transitions(
+            prepared[m],
+            frame[COMPUTATION_DELAY],
+            frame[CURRENT_PERIOD] - frame[COMPUTATION_DELAY],
+            matrices[m],
+        )
+    per_period = int(frame[VELOCITY_EVERY]) * int(frame[POSITION_EVERY])
+    x = np.zeros(STATE_SIZE)
+    u = np.zeros(DRIVE_SIZE)
+    senses = np.zeros(2, dtype=np.int64)
+    o = np.zeros(OBSERVER_SIZE)
+    c = np.zeros((SERIES_ROWS, TERMS + 1))
+    new = np.zeros(STATE_SIZE)
+    record = np.zeros(total)
+    kept = np.zeros((KEPT, count, FIGURES_SIZE))
+    p = prepared[count - 1]
+    senses[0] = 0 if p[MOTOR_DRAG] > 0.0 else 1
+    senses[1] = 0 if p[HOLDING] > 0.0 else 1
+    x[CURRENT] = hold_still(u, gains, frame, p)
+    x[TWIST] = 0.0 if p[RIGID] != 0.0 else p[PULL] / p[SPRING]
+    rest_offset = x[TWIST]
+    base = 0.0
+    for cycle in range(max_cycles):
+        level = u[BUCKET]
+        difference = 0.0
+        row = 0
+        for m in range(count):
+            periods = int(moves[m, PERIODS])
+            change = run_move(
+                x, senses, u, prepared[m], matrices[m], limits, frame, gains, pieces,
+                first_piece[m], first_piece[m + 1], moves[m], base, rest_offset,
+                record[row : row + periods], trace, row * per_period, kept[cycle % KEPT, m], o, c, new,
+            )  # fmt: skip
+            if math.isinf(change):
+                diverge(figures)
+                return 0
+            difference = max(difference, change)
+            row += periods
+        rise[0] = u[BUCKET] - level
+        base += moves[count - 1, TARGET]
+        if cycle > 0 and difference <= SAME * frame[WINDOW]:
+            keep_worst(kept, cycle % KEPT, 1, figures)
+            return cycle + 1
+    keep_worst(kept, 0, min(max_cycles, KEPT), figures)
+    return -max_cycles
+
+
+@compiled
+def simulate_corners(
+    plants: Array,
+    limits: Array,
+    frame: Array,
+    gains: Array,
+    pieces: Array,
+    first_piece: Whole,
+    moves: Array,
+    max_cycles: int,
+    figures: Array,
+    cycles: Whole,
+) -> None:
+    """`simulate` for every row of plants [corners, moves, PLANT_SIZE] and limits [corners, LIMITS_SIZE], without traces."""
+    trace = np.zeros((0, 0))
+    rise = np.zeros(1)
+    for n in range(plants.shape[0]):
+        cycles[n] = simulate(
+            plants[n], limits[n], frame, gains, pieces, first_piece, moves, max_cycles, figures[n], trace, rise
+        )
