@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from axis.completion import Rates, ShaftPlant
+from axis.completion import Rates
 from axis.description.settings import CurrentLoop
 
 
@@ -58,10 +58,18 @@ def current_loop_lag(inductance: float, kp: float) -> float:
     return inductance / kp
 
 
-def design_current_loop(plant: ShaftPlant, rates: Rates) -> CurrentLoop:
-    """The current loop by the modulus optimum, from resistance, saturated inductance and delay."""
+def design_current_loop(resistance: float, saturated_inductance: float, rates: Rates) -> CurrentLoop:
+    """The current loop by the modulus optimum.
+
+    Parameters
+        resistance [ohm]: of one phase, cold: there the integral time is longest
+        saturated_inductance [H]: of one phase at peak current, where the loop is fastest
+        rates: of the three loops
+    Returns the settings
+    Source: [kessler1955]
+    """
     delay = current_delay(rates.computation_delay, rates.current_period)
     return CurrentLoop(
-        kp=modulus_optimum_gain(plant.inductance, delay),
-        ti=modulus_optimum_integral_time(plant.inductance, plant.resistance),
+        kp=modulus_optimum_gain(saturated_inductance, delay),
+        ti=modulus_optimum_integral_time(saturated_inductance, resistance),
     )

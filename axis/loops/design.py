@@ -27,9 +27,9 @@ def largest_setpoint_weight(c2: float, c1: float, c0: float) -> float:
     """The largest set-point weight for which a denominator can be reached.
 
     Parameters
-        c2 [1/s^2]: coefficient of s²
-        c1 [1/s^3]: coefficient of s
-        c0 [1/s^4]: constant coefficient
+        c2 [1/s²]: coefficient of s²
+        c1 [1/s³]: coefficient of s
+        c0 [1/s⁴]: constant coefficient
     Returns [1]
     b = c1²/(4·c0·c2); 0.56 for the published order 4; above 1 where a plain PI has a solution
     Source: [own]
@@ -43,10 +43,10 @@ def gains_for_denominator(
     """The gains that give the closed loop the denominator s⁴ + s³/Tσ + c2·s² + c1·s + c0.
 
     Parameters
-        c2 [1/s^2]: coefficient of s²
-        c1 [1/s^3]: coefficient of s
-        c0 [1/s^4]: constant coefficient
-        inertia [kg·m^2]: total, at the shaft
+        c2 [1/s²]: coefficient of s²
+        c1 [1/s³]: coefficient of s
+        c0 [1/s⁴]: constant coefficient
+        inertia [kg·m²]: total, at the shaft
         lag [s]: Tσ
         setpoint_weight [1]: b
     Returns the gains
@@ -104,7 +104,7 @@ def order4_design(
 
     Parameters
         prototype [1]: α, β, γ
-        inertia [kg·m^2]: total, at the shaft
+        inertia [kg·m²]: total, at the shaft
         lag [s]: Tσ
         setpoint_weight [1]: b, at most γ²/(4·β)
     Returns the gains
@@ -121,7 +121,7 @@ def order3_design(
     Parameters
         prototype [1]: α₃, β₃
         omega [rad/s]: natural frequency, lowered until the margins hold
-        inertia [kg·m^2]: total, at the shaft
+        inertia [kg·m²]: total, at the shaft
         lag [s]: Tσ
         setpoint_weight [1]: b
     Returns the gains

@@ -8,7 +8,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from axis.completion import Rates, ShaftPlant
+from axis.completion import Rates
 from axis.description.settings import CurrentLoop, TorqueFilter
 from axis.loops.current import current_loop_lag
 from axis.loops.filters import delay_at_rest, lowpass_share, torque_filter
@@ -72,7 +72,7 @@ def velocity_filter_lag(time_constant: float, period: float) -> float:
 
 
 def velocity_loop_lags(
-    plant: ShaftPlant,
+    inductance: float,
     rates: Rates,
     current: CurrentLoop,
     velocity_filter: float = 0.0,
@@ -81,7 +81,7 @@ def velocity_loop_lags(
     """All lags of the velocity loop.
 
     Parameters
-        plant: for the inductance
+        inductance [H]: of one phase, unsaturated: there the current loop is slowest
         rates: of the three loops
         current: the current loop as set
         velocity_filter [s]: time constant of the velocity filter
@@ -91,7 +91,7 @@ def velocity_loop_lags(
     """
     period = rates.velocity_period
     return Lags(
-        current_loop=current_loop_lag(plant.inductance, current.kp),
+        current_loop=current_loop_lag(inductance, current.kp),
         velocity_hold=hold_lag(period, rates.current_period),
         differencing=differencing_lag(period),
         velocity_filter=velocity_filter_lag(velocity_filter, period),

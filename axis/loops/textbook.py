@@ -28,7 +28,7 @@ def symmetrical_optimum(inertia: float, lag: float) -> CascadeGains:
     """Velocity and position loop by the symmetrical optimum with a = 2.
 
     Parameters
-        inertia [kg·m^2]: total, at the shaft
+        inertia [kg·m²]: total, at the shaft
         lag [s]: Tσ
     Returns the gains, set-point weight 0
     Kp = J/(2·Tσ);  T_n = 4·Tσ;  Kv = 1/(16·Tσ)
@@ -77,7 +77,7 @@ def textbook_settings(
 
     Parameters
         loops: gives current loop, velocity filter, torque filters and move jerk
-        inertia [kg·m^2]: total, at the shaft
+        inertia [kg·m²]: total, at the shaft
         lag [s]: Tσ, of the same filters
         corners: the sampled plants at which the margins must hold
         wishes: the margins
