@@ -12,6 +12,7 @@ Corner = Mapping[str, float]  # tolerance name -> signed share, e.g. {"load_mass
 
 # A residual that vanishes at whole periods of the load's oscillation hides between the ends of these two.
 FIVE_POINTS = ("load_mass", "stiffness")
+SHARES = (-1.0, -0.5, 0.0, 0.5, 1.0)
 
 
 def corners(tolerance: Tolerance) -> list[dict[str, float]]:
@@ -20,7 +21,7 @@ def corners(tolerance: Tolerance) -> list[dict[str, float]]:
     for field in fields(tolerance):
         share = float(getattr(tolerance, field.name))
         if share > 0:
-            steps = (-1.0, -0.5, 0.0, 0.5, 1.0) if field.name in FIVE_POINTS else (-1.0, 1.0)
+            steps = SHARES if field.name in FIVE_POINTS else (-1.0, 1.0)
             names.append(field.name)
             points.append([step * share for step in steps])
     return [dict(zip(names, combination, strict=True)) for combination in itertools.product(*points)]

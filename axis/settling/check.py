@@ -49,4 +49,4 @@ def run_corners(
 
 def tail_trace(axis: CompletedAxis, loops: Loops, corner: Mapping[str, float]) -> Trace:
     """The record of the last cycle at one corner, for pictures."""
-    return trace(scenario(axis, loops, corner))
+    return trace(scenario(axis, loops, corner))[1]

@@ -107,24 +107,49 @@ class Objective:
         violation = self.margins(loops)
         if violation > 0.0:
             return UNSTABLE_SCORE * (1.0 + violation), 0
-        gains = gains_vector(loops, self.axis.drive.rates, self._inertia)
-        cycle = cycle_arrays(commanded(self.axis, loops), self.axis.drive.rates, self.axis.ratio)
         score, done = 0.0, 0
         while done < len(self.corners):
             # The corner that was worst last stands first and is asked alone: it ends most candidates.
             until = 1 if done == 0 else len(self.corners)
-            figures = np.zeros((until - done, len(self.axis.moves), FIGURES_SIZE))
-            cycles = np.zeros(until - done, dtype=np.int64)
-            simulate_corners(
-                self._plants[done:until], self._limits[done:until], self._frame, gains,
-                cycle.pieces, cycle.first_piece, cycle.moves, MAX_CYCLES, figures, cycles,
-            )  # fmt: skip
-            for at in figures:
-                score = max(score, corner_score(at, cycle.moves[:, DURATION], self.conditions))
+            figures, durations = self._figures(loops, done, until)
+            score = max(score, *(corner_score(at, durations, self.conditions) for at in figures))
             done = until
             if score > beat:
                 break
         return score, done
+
+    def at_corners(self, loops: Loops, executor: Executor) -> list[float]:
+        """Score at every corner, in the order of `corners`; margins that fail count at each."""
+        violation = self.margins(loops)
+        if violation > 0.0:
+            return [UNSTABLE_SCORE * (1.0 + violation)] * len(self.corners)
+        size = max(len(self.corners) // 8, 1)
+        parts = [(n, min(n + size, len(self.corners))) for n in range(0, len(self.corners), size)]
+        results = executor.map(lambda part: self._figures(loops, *part), parts)
+        return [corner_score(at, durations, self.conditions) for found, durations in results for at in found]
+
+    def worst_corners(self, loops: Loops, count: int, known: Sequence[Corner], executor: Executor) -> list[Corner]:
+        """The corners with the largest scores that are not known yet."""
+        scores = self.at_corners(loops, executor)
+        order = sorted(range(len(scores)), key=lambda n: -scores[n])
+        return [self.corners[n] for n in order if self.corners[n] not in known][:count]
+
+    def largest_following_error(self, loops: Loops) -> float:
+        """[m] Largest following error on the corners, infinite where the loop diverges."""
+        figures, _ = self._figures(loops, 0, len(self.corners))
+        return float(figures[:, :, FOLLOWING_ERROR].max()) / self._scale
+
+    def _figures(self, loops: Loops, first: int, last: int) -> tuple[Array, Array]:
+        """What the kernel saw at corners `first` to `last`, and the durations of the moves."""
+        gains = gains_vector(loops, self.axis.drive.rates, self._inertia)
+        cycle = cycle_arrays(commanded(self.axis, loops), self.axis.drive.rates, self.axis.ratio)
+        figures = np.zeros((last - first, len(self.axis.moves), FIGURES_SIZE))
+        cycles = np.zeros(last - first, dtype=np.int64)
+        simulate_corners(
+            self._plants[first:last], self._limits[first:last], self._frame, gains,
+            cycle.pieces, cycle.first_piece, cycle.moves, MAX_CYCLES, figures, cycles,
+        )  # fmt: skip
+        return figures, cycle.moves[:, DURATION]
 
     def scores(self, candidates: Sequence[Loops], beat: Sequence[float], executor: Executor) -> list[float]:
         """Scores of many candidates, in their order; counts the runs."""
@@ -157,7 +182,7 @@ def move_violation(at: Array, duration: float, wanted: Conditions) -> float:
     missed += max(at[PEAK_SPEED] / wanted.max_speed - 1.0, 0.0)
     clipped = float(at[CURRENT_SATURATED] + at[VOLTAGE_SATURATED])
     missed += 0.1 + clipped / duration if clipped > 0.0 else 0.0
-    return missed + float(at[TRIPPED])
+    return float(missed + at[TRIPPED])
 
 
 def extreme_plants(axis: CompletedAxis) -> list[ShaftPlant]:

@@ -29,7 +29,7 @@ class Variable:
     def value(self, share: float) -> float:
         """The value at `share` of the way from `low` to `high`."""
         if self.logarithmic:
-            return self.low * (self.high / self.low) ** share
+            return float(self.low * (self.high / self.low) ** share)
         return self.low + share * (self.high - self.low)
 
     def share(self, value: float) -> float:
