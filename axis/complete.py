@@ -56,7 +56,8 @@ class _Notes:
     def assume(self, path: str, stated: T | None, default: T, text: str) -> T:
         if stated is not None:
             return stated
-        self.assumptions.append(Assumption(path, text))
+        value = default if isinstance(default, float | int | str) else None
+        self.assumptions.append(Assumption(path, text, value))
         return default
 
     def need(self, path: str, stated: T | None, default: T, example: str) -> T:
@@ -207,7 +208,7 @@ def _motor(motor: Motor, notes: _Notes) -> CompletedMotor:
         notes.need("motor.peak_current", None, 1.0, '"13 A"')
     if peak_current is None:
         guess = (peak_torque or 1.0) / constant
-        peak_current = notes.assume("motor.peak_current", None, guess, "peak torque over torque constant")
+        peak_current = notes.assume("motor.peak_current", None, guess, "peak torque over torque constant, q-axis peak")
     if peak_torque is None:
         peak_torque = notes.assume(
             "motor.peak_torque", None, peak_current * constant, "peak current times torque constant"
@@ -253,9 +254,13 @@ def _constants(motor: Motor, notes: _Notes) -> tuple[float, float]:
             notes.warnings.append(f"motor.torque_constant: {found.text}")
         return constant, voltage
     if constant is not None:
-        return constant, notes.assume("motor.voltage_constant", None, constant / 1.5, "from the torque constant")
+        return constant, notes.assume(
+            "motor.voltage_constant", None, constant / 1.5, "from the torque constant, phase peak"
+        )
     if voltage is not None:
-        return notes.assume("motor.torque_constant", None, 1.5 * voltage, "from the voltage constant"), voltage
+        return notes.assume(
+            "motor.torque_constant", None, 1.5 * voltage, "from the voltage constant, per peak ampere"
+        ), voltage
     notes.need("motor.torque_constant", None, 1.0, '"0.72 N*m/A" with torque_constant_basis = "rms"')
     return 1.0, 1.0 / 1.5
 

@@ -33,10 +33,11 @@ class Check:
 
 @dataclass(frozen=True)
 class Assumption:
-    """A value the user did not state: its path in the axis file, the value taken and why."""
+    """A value the user did not state: its path in the axis file, why, and the value (SI) where it is one."""
 
     path: str
     text: str
+    value: float | str | None = None
 
 
 @dataclass(frozen=True)
