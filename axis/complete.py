@@ -21,6 +21,8 @@ from axis.machine.motor_constants import (
     voltage_constant_to_phase_peak,
     winding_to_phase,
 )
+from axis.machine.temperature import TWENTY_CELSIUS
+from axis.machine.thermal import TwoBody, heat_capacity
 from axis.mechanics.reflection import StageFloats, lump
 from axis.mechanics.solids import STEEL_DENSITY, cylinder_inertia
 from axis.mechanics.stages import screw_ratio
@@ -40,6 +42,7 @@ CURRENT_PERIOD = 62.5e-6  # [s]
 POLE_PAIRS = 4
 ENCODER_COUNTS = 2**20
 SETTLE_WITHIN = 0.05  # [s], for the observation only
+AMBIENT = 313.15  # [K]
 JERK_TIME = 0.02  # [s] from rest to full acceleration
 
 T = TypeVar("T")
@@ -80,6 +83,7 @@ def complete(axis: Axis) -> CompletedAxis:
         notes.assumptions.append(
             Assumption("transmission", "no stiffness is stated: the transmission is taken as rigid")
         )
+    ambient = notes.assume("axis.ambient", axis.head.ambient, AMBIENT, "40 °C, at which motors are usually rated")
     settle_within = notes.assume(
         "window.settle_within",
         axis.window.settle_within,
@@ -111,6 +115,7 @@ def complete(axis: Axis) -> CompletedAxis:
         moves=moves,
         settle_within=settle_within,
         assumptions=tuple(notes.assumptions),
+        ambient=ambient,
         warnings=tuple(notes.warnings),
     )
 
@@ -232,7 +237,19 @@ def _motor(motor: Motor, notes: _Notes) -> CompletedMotor:
         rated_current=to_peak(motor.rated_current),
         rated_speed=motor.rated_speed,
         max_speed=motor.max_speed,
+        thermal=_thermal(motor),
+        constants_temperature=notes.assume(
+            "motor.constants_temperature", motor.constants_temperature, TWENTY_CELSIUS, "20 °C, common practice"
+        ),
     )
+
+
+def _thermal(motor: Motor) -> TwoBody | None:
+    inner, outer = motor.winding_housing, motor.housing_ambient
+    fast, slow = motor.winding_time_constant, motor.housing_time_constant
+    if inner is None or outer is None or fast is None or slow is None:
+        return None
+    return TwoBody(inner, outer, heat_capacity(fast, inner), heat_capacity(slow, outer))
 
 
 def _constants(motor: Motor, notes: _Notes) -> tuple[float, float]:

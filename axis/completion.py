@@ -12,8 +12,12 @@ from dataclasses import dataclass, replace
 
 from axis.description.axis import Axis
 from axis.description.moves import Law
+from axis.machine.thermal import TwoBody
 from axis.mechanics.compliance import spring_damping
 from axis.mechanics.reflection import StageFloats
+from axis.motion.constant_acceleration import constant_acceleration, constant_acceleration_for_duration
+from axis.motion.jerk_limited import jerk_limited, jerk_limited_for_duration
+from axis.motion.pieces import Profile
 from axis.verdicts import Assumption
 
 
@@ -95,6 +99,8 @@ class CompletedMotor:
     rated_current: float | None  # [A]
     rated_speed: float | None  # [rad/s]
     max_speed: float | None  # [rad/s]
+    thermal: TwoBody | None = None  # None: the data sheet does not state both bodies
+    constants_temperature: float = 293.15  # [K] where torque constant and resistance were stated
 
 
 @dataclass(frozen=True)
@@ -129,6 +135,21 @@ class CompletedMove:
     force: float  # [N] against positive travel
 
 
+def move_profile(move: CompletedMove) -> Profile:
+    """The set-points of one move; raises NotComputable where its time is too short for its limits."""
+    distance, speed, acceleration, deceleration = move.distance, move.speed, move.acceleration, move.deceleration
+    if move.duration is not None:
+        if move.law == "jerk_limited":
+            return jerk_limited_for_duration(distance, move.duration, speed, acceleration, move.jerk, deceleration)
+        return constant_acceleration_for_duration(distance, move.duration, speed, acceleration, deceleration)
+    assert speed is not None
+    assert acceleration is not None
+    if move.law == "jerk_limited":
+        assert move.jerk is not None
+        return jerk_limited(distance, speed, acceleration, move.jerk, deceleration)
+    return constant_acceleration(distance, speed, acceleration, deceleration)
+
+
 @dataclass(frozen=True)
 class CompletedAxis:
     """An axis with nothing left open. Load units are metres, or radians where it turns."""
@@ -153,6 +174,7 @@ class CompletedAxis:
     moves: tuple[CompletedMove, ...]
     settle_within: float  # [s] as stated, or assumed for the observation
     assumptions: tuple[Assumption, ...]
+    ambient: float = 313.15  # [K]
     warnings: tuple[str, ...] = ()
 
     @property
