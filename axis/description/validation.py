@@ -157,8 +157,8 @@ def drive_problems(drive: Drive, path: str = "drive") -> list[Problem]:
         found += _ordered(drive, path, low, high)
     if drive.supply_phases == 2:
         found.append(Problem(f"{path}.supply_phases", "must be 1 or 3", "2", "supply_phases = 3"))
-    found += _multiple(drive, path, "velocity_period", "current_period")
-    found += _multiple(drive, path, "position_period", "velocity_period" if drive.velocity_period else "current_period")
+    uneven = _multiple(drive, path, "velocity_period", "current_period")
+    found += uneven or _multiple(drive, path, "position_period", "velocity_period")
     delay, period = drive.computation_delay, drive.current_period
     if delay is not None and period is not None and delay > period * (1.0 + WHOLE):
         rule = f"is longer than one current period, {_text(drive, 'current_period')}"

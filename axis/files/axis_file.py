@@ -153,9 +153,11 @@ def _row_beside(row: dict[str, Any], own: dict[str, Any], bases: dict[str, tuple
 
 
 def _as_typed(typed: dict[str, str], problem: Problem) -> str:
-    if problem.path in typed and problem.value:
-        return quoted(typed[problem.path])
-    return problem.value
+    """The value of a problem as it stands in the file, where it does."""
+    text = typed.get(problem.path)
+    if text is None:
+        return problem.value
+    return text if re.fullmatch(r"[-+.0-9eE]+|true|false", text) else quoted(text)
 
 
 def _paths(raw: Any, path: str = "") -> dict[str, int]:

@@ -71,14 +71,14 @@ class Walker:
             self._note(path, raw, "stands where a table is wanted", f"[{path}]" if path else "")
             return None
         keys, hints = keys_of(cls), type_hints(cls)
-        for key in raw:
-            if key not in keys:
-                self._unknown(cls, key, raw[key], path)
+        meant = {self._unknown(cls, key, raw[key], path) for key in raw if key not in keys}
         given = {}
         for key, field in keys.items():
             here = f"{path}.{key}" if path else key
             if key in raw:
                 given[field.name] = self._value(field, hints[field.name], raw[key], here)
+            elif key in meant:  # mistyped, and told: not missing as well
+                given[field.name] = _neutral(field, hints[field.name])
             elif field.default is dataclasses.MISSING:
                 self.problems.append(Problem(here, "is missing", example=_example(field, key, self.rotary)))
                 given[field.name] = _neutral(field, hints[field.name])
@@ -126,7 +126,7 @@ class Walker:
         try:
             return parse(raw, declaration, self.rotary, path)
         except InputError as error:
-            self.problems += error.problems
+            self.problems += [dataclasses.replace(p, example=p.example.strip("[]")) for p in error.problems]
             return math.nan
 
     def _plain(self, declaration: Plain, raw: Any, path: str) -> Any:
@@ -151,13 +151,15 @@ class Walker:
             return _NEUTRAL.get(kind, "")
         return float(raw) if kind == "ratio" else raw
 
-    def _unknown(self, cls: Any, key: str, raw: Any, path: str) -> None:
+    def _unknown(self, cls: Any, key: str, raw: Any, path: str) -> str:
+        """Tells an unknown key; returns the key that was probably meant, or ""."""
         keys = keys_of(cls)
         near = _nearest(key, keys)
         rule = f'stands under an unknown key; did you mean "{near}"?' if near else "stands under an unknown key"
         right = _example(keys[near], near, self.rotary) if near else f"one of {', '.join(keys)}"
         shown = key if key.isprintable() and len(key) <= LONGEST_NAME else quoted(key)
         self._note(f"{path}.{shown}" if path else shown, raw, rule, right)
+        return near
 
     def _note(self, path: str, raw: Any, rule: str, right: str) -> None:
         self.problems.append(Problem(path, rule, _written(raw), right))
