@@ -135,13 +135,12 @@ def read_table(path: Path, kind: str) -> Table:
     what = f"a catalogue of {kind}s" if kind != "gearbox" else "a catalogue of gearboxes"
     data = read_bytes(path, LARGEST_TABLE, what)
     text = as_text(data, path.name, LARGEST_TABLE, what, _LONGEST_LINE)
-    head, *body = _lines(text, path) or [(1, ())]
+    delimiter, (head, *body) = _lines(text, path)
     columns, problems = _columns(KINDS[kind], path.name, head)
-    decimal_comma = False
-    for _, cells in body:
-        for (_, key, _), cell in zip(columns, cells, strict=False):
-            if _is_number(KINDS[kind], key) and _COMMA.fullmatch(cell.strip()):
-                decimal_comma = True
+    numbers = [n for n, (_, key, _) in enumerate(columns) if _is_number(KINDS[kind], key)]
+    decimal_comma = delimiter != "," and any(
+        _COMMA.fullmatch(cells[n].strip()) for _, cells in body for n in numbers if n < len(cells)
+    )
     at = [key for _, key, _ in columns].index("name")
     names = tuple(cells[at].strip() if at < len(cells) else "" for _, cells in body)
     for name, count in Counter(names).items():
@@ -151,12 +150,12 @@ def read_table(path: Path, kind: str) -> Table:
     return Table(path, KINDS[kind], digest_of(data), columns, tuple(body), decimal_comma, tuple(problems), names)
 
 
-def _lines(text: str, path: Path) -> list[tuple[int, tuple[str, ...]]]:
-    """(line, cells) of every line that is neither a comment nor empty; the header decides what parts the cells."""
+def _lines(text: str, path: Path) -> tuple[str, list[tuple[int, tuple[str, ...]]]]:
+    """What parts the cells, as the header shows, and (line, cells) of each line that is no comment and not empty."""
     first = next((line for line in text.splitlines() if line.strip() and not line.lstrip().startswith("#")), "")
     delimiter = max((";", "\t", ","), key=first.count)
     reader = csv.reader(text.splitlines(keepends=True), delimiter=delimiter, strict=True)
-    found = []
+    found: list[tuple[int, tuple[str, ...]]] = []
     try:
         for cells in reader:
             if any(cell.strip() for cell in cells) and not cells[0].lstrip().startswith("#"):
@@ -165,7 +164,7 @@ def _lines(text: str, path: Path) -> list[tuple[int, tuple[str, ...]]]:
                 raise InputError([Problem(path.name, f"has more than {_MOST_ROWS} rows")])
     except csv.Error as error:
         raise InputError([Problem(f"{path.name} line {reader.line_num}", f"is not CSV ({error})")]) from None
-    return found
+    return delimiter, found or [(1, ())]
 
 
 def _columns(
