@@ -123,3 +123,33 @@ def _turns(response: StepResponse) -> tuple[float, ...]:
         low, high = place * response.interval, (place + 1) * response.interval
         turns.append(float(brentq(lambda t: response.error(t, 1), low, high, xtol=1e-15 * high, rtol=1e-14)))
     return 0.0, *turns, (len(slope) - 1) * response.interval
+
+
+def delayed_integrator_step(gain: float, delay: float, time: float) -> float:
+    """Step response of an integrator in a loop with a true delay: what a current loop does at its best.
+
+    Parameters
+        gain [1/s]: of the integrator, K
+        delay [s]: T_d
+        time [s]: from the step
+    Returns [1]
+    y = Σ (−1)^(k+1)·(K·(t − k·T_d))^k/k!, k = 1, 2, … while t > k·T_d
+    Source: [own], by the method of steps; at K·T_d = 1/2 it overshoots by 4.05 %, not by the 4.32 % of a lag
+    """
+    total, k = 0.0, 1
+    while time > k * delay:
+        total -= (-gain * (time - k * delay)) ** k / math.factorial(k)
+        k += 1
+    return total
+
+
+def delayed_integrator_margins(gain: float, delay: float) -> tuple[float, float]:
+    """Gain margin [1] and phase margin [rad] of an integrator in a loop with a true delay.
+
+    Parameters
+        gain [1/s]: of the integrator, K
+        delay [s]: T_d
+    Returns (π/(2·K·T_d), π/2 − K·T_d)
+    Source: [own]
+    """
+    return math.pi / (2.0 * gain * delay), math.pi / 2.0 - gain * delay

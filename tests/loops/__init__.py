@@ -1,0 +1,1 @@
+"""Loops: current, velocity and position design, prototypes, margins."""
