@@ -2,7 +2,13 @@
 
 from __future__ import annotations
 
-TEMPLATE = """\
+
+def template() -> str:
+    """A commented axis file; the keys it shows are those of this version."""
+    return _TEXT
+
+
+_TEXT = """\
 # An axis file. Every quantity is a text with its unit: "38 kg", "4.1 mH", "300 mm", "3000 rpm", "12 lb", "4 in".
 # Counts and ratios are plain numbers. A line that starts with # is a comment: take the # away to state the value.
 # What is left out is assumed and told, or makes its checks `not evaluated`. The values below only show the form:

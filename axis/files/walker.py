@@ -145,7 +145,7 @@ class Walker:
             rule = "" if fits else f"must be one line of 1 to {LONGEST_NAME} characters"
         elif kind in ("count", "ratio"):
             rule = _number_rule(raw, declaration)
-        self.typed[path] = _written(raw).strip('"')
+        self.typed[path] = raw if isinstance(raw, str) else _written(raw)
         if rule:
             self._note(path, raw, rule, declaration.example)
             return _NEUTRAL.get(kind, "")
@@ -187,8 +187,10 @@ def _written(raw: Any) -> str:
         return quoted(raw)
     if isinstance(raw, bool):
         return "true" if raw else "false"
-    if isinstance(raw, dict | list):
-        return "a table" if isinstance(raw, dict) else "a list"
+    if isinstance(raw, dict):
+        return "a table"
+    if isinstance(raw, list):
+        return f"[{', '.join(quoted(word) for word in raw)}]" if all(isinstance(w, str) for w in raw[:9]) else "a list"
     return quoted(str(raw)).strip('"')
 
 

@@ -7,17 +7,18 @@ import os
 import re
 import tempfile
 import typing
-from dataclasses import fields
+from dataclasses import fields, replace
 from pathlib import Path
 from typing import Any
 
 import tomlkit
 from tomlkit.exceptions import TOMLKitError
-from tomlkit.items import InlineTable, Item
+from tomlkit.items import Item
 
 from axis.description.axis import Axis
 from axis.description.settings import Loops
 from axis.errors import CannotWrite, InputError, Problem
+from axis.files.axis_file import Document
 from axis.files.guard import digest_of
 from axis.files.walker import classes_in, is_list, keys_of, type_hints
 from axis.units import Plain, Quantity, exact, quoted
@@ -54,11 +55,22 @@ def replace_file(path: Path, data: bytes, digest: str | None = None) -> None:
         raise CannotWrite(f"{path} cannot be written ({reason}); whatever stood there is whole.") from None
 
 
-def write_text(path: Path, text: str, digest: str | None = None) -> str:
-    """The same for a text; returns the digest of what was written."""
-    data = text.encode("utf-8")
-    replace_file(path, data, digest)
-    return digest_of(data)
+def save(path: Path, document: Document, force: bool = False) -> Document:
+    """Write the document's text; refused where the file has changed since it was read, unless `force` says so."""
+    data = document.text.encode("utf-8")
+    replace_file(path, data, None if force or path != document.path else document.digest)
+    return replace(document, path=path, digest=digest_of(data))
+
+
+def save_loops(path: Path, document: Document, loops: Loops, force: bool = False) -> Document:
+    """Write the document's text with `loops` under [loops], once it is sure that it reads back to the same floats."""
+    try:
+        changed = document.with_text(with_loops(document.text, loops, document.axis.rotary))
+    except InputError as error:
+        raise CannotWrite(f"the settings would not read back, so nothing was written: {error}") from None
+    if changed.axis.loops != loops:
+        raise CannotWrite("the settings would read back as others, so nothing was written")
+    return save(path, changed, force)
 
 
 def with_loops(text: str, loops: Loops, rotary: bool) -> str:
@@ -194,7 +206,7 @@ def _merge(table: Any, values: dict[str, Any]) -> None:
         table.pop(key)
     for key, value in values.items():
         old = table.get(key)
-        if isinstance(value, dict) and isinstance(old, dict) and not isinstance(old, InlineTable):
+        if isinstance(value, dict) and isinstance(old, dict):
             _merge(old, value)
         elif key not in table or old != value:
             table[key] = _inline(value)

@@ -11,8 +11,9 @@ import pytest
 
 from axis.errors import InputError
 from axis.files.axis_file import read, read_text
-from axis.files.template import TEMPLATE
+from axis.files.template import template
 
+TEMPLATE = template()
 WATCHDOG = 30  # [s]; the answer itself takes a fraction of a second
 
 

@@ -12,8 +12,9 @@ from axis.description.transmission import Gearbox
 from axis.errors import InputError
 from axis.files.axis_file import read_text
 from axis.files.catalogue import KINDS, find, parts, read_table, shipped_folder, tables
-from axis.files.template import TEMPLATE
+from axis.files.template import template
 
+TEMPLATE = template()
 HEAD = "name,ratio,inertia [kg*cm^2],efficiency,peak_torque [N*m],max_input_speed [rpm]\n"
 
 
