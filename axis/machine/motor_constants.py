@@ -137,8 +137,9 @@ def cross_check(
     share = f"the torque constant is {ratio:.3f} times what the voltage constant says"
     if any(abs(ratio / f - 1.0) <= NEAR_FACTOR or abs(ratio * f - 1.0) <= NEAR_FACTOR for f in BASIS_FACTORS):
         readings = _agreeing(ratio, torque_basis, voltage_basis)
-        named = "; or ".join(f'torque_constant_basis = "{t}" with voltage_constant_basis = "{v}"' for t, v in readings)
-        return CrossCheck("error", ratio, readings, f"{share}, a factor of confused bases; they would agree as {named}")
+        named = "; or as ".join(f'torque_constant_basis = "{t}", voltage_constant_basis = "{v}"' for t, v in readings)
+        cure = f"they would agree as {named}" if readings else "no pair of bases makes them agree: look at both values"
+        return CrossCheck("error", ratio, readings, f"{share}, a factor of confused bases; {cure}")
     if abs(ratio - 1.0) <= AGREES:
         return CrossCheck("ok", ratio, (), "")
     if abs(ratio - 1.0) <= DOUBTFUL:

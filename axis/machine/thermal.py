@@ -87,8 +87,8 @@ class PeriodicRises:
 
     winding: tuple[float, ...]  # [K] at the start of each piece of the cycle
     housing: tuple[float, ...]  # [K]
-    peak_winding: float  # [K] hottest instant of the cycle, inside a piece if there
-    peak_housing: float  # [K] hottest of the pieces' ends
+    peak_winding: float  # [K] hottest instant of the cycle: always where two pieces meet
+    peak_housing: float  # [K] hottest of the instants where two pieces meet
 
 
 def periodic_rises(body: TwoBody, losses: Sequence[float], durations: Sequence[float]) -> PeriodicRises:
@@ -99,7 +99,8 @@ def periodic_rises(body: TwoBody, losses: Sequence[float], durations: Sequence[f
         losses [W]: of each piece
         durations [s]: of each piece
     Returns the rises
-    fixed point x = Φ·x + b of the map over one cycle
+    fixed point x = Φ·x + b of the map over one cycle. Where the winding turns inside a piece, the housing is falling
+    from a maximum at which the winding was hotter, so that the hottest instant lies where two pieces meet
     Source: [own]; losses that do not depend on the temperature
     """
     total, offset = np.eye(2), np.zeros(2)
@@ -108,30 +109,14 @@ def periodic_rises(body: TwoBody, losses: Sequence[float], durations: Sequence[f
         total, offset = step @ total, step @ (offset - steady) + steady
     state = np.linalg.solve(np.eye(2) - total, offset)
     rises = [(float(state[0]), float(state[1]))]
-    peaks = [rises[0][0]]
     for loss, duration in zip(losses, durations, strict=True):
-        peaks.append(_peak_inside(body, rises[-1], loss, duration))
         rises.append(rises_after(body, rises[-1], loss, duration))
     return PeriodicRises(
         winding=tuple(one for one, _ in rises[:-1]),
         housing=tuple(one for _, one in rises[:-1]),
-        peak_winding=max(*peaks, *(one for one, _ in rises)),
+        peak_winding=max(one for one, _ in rises),
         peak_housing=max(one for _, one in rises),
     )
-
-
-def _peak_inside(body: TwoBody, start: tuple[float, float], loss: float, duration: float) -> float:
-    """[K] Winding rise where it turns inside a piece, else at the piece's start."""
-    fast, slow = natural_rates(body)
-    slope = _matrix(body) @ (np.array(start) - np.array(steady_rises(body, loss)))
-    # slope of the winding: fading·exp(−fast·t) + lasting·exp(−slow·t)
-    second = float((_matrix(body) @ slope)[0])
-    fading = (second + slow * float(slope[0])) / (slow - fast)
-    lasting = float(slope[0]) - fading
-    if lasting == 0.0 or -fading / lasting <= 1.0:
-        return start[0]
-    turn = math.log(-fading / lasting) / (fast - slow)
-    return rises_after(body, start, loss, turn)[0] if turn < duration else start[0]
 
 
 def _matrix(body: TwoBody) -> Array:

@@ -1,4 +1,4 @@
-"""Friction of a sliding load as a function of its speed. Plain arithmetic: the simulation compiles it."""
+"""Friction of a sliding load as a function of its speed; the simulation compiles `stribeck` as it stands."""
 
 from __future__ import annotations
 
