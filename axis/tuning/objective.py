@@ -39,7 +39,7 @@ Corner = Mapping[str, float]
 
 UNSTABLE_SCORE = 1e9  # margins missed; no simulation was spent
 VIOLATION_SCORE = 1e4  # a condition of the verdict missed
-MAX_CYCLES = 20
+MAX_CYCLES = 1
 
 
 @dataclass(frozen=True)

@@ -5,15 +5,16 @@ from __future__ import annotations
 import math
 from collections.abc import Callable
 from concurrent.futures import Executor
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 
 from axis.completion import CompletedAxis
 from axis.description.corners import corners
 from axis.description.settings import Loops
-from axis.errors import NotComputable, Stopped
+from axis.errors import Stopped
 from axis.loops.lag import velocity_loop_lags
+from axis.loops.start import Designed, designed_start
 from axis.loops.textbook import textbook_settings
 from axis.settling.check import check
 from axis.sizing.bound import bounds
@@ -21,13 +22,14 @@ from axis.tuning.evolution import Population, generations
 from axis.tuning.objective import VIOLATION_SCORE, Corner, Objective, extreme_plants
 from axis.tuning.reference import margins_everywhere, reference
 from axis.tuning.result import Reference, Step, Tuned
-from axis.tuning.start import Candidate, bare_loops, designs, own_band
+from axis.tuning.start import bare_loops, own_band
 from axis.tuning.variables import Space, rounded, space
 
 POPULATION = 32
 SCREENED = 640  # random points judged on their margins alone
 GENERATIONS = 10  # between two looks at all corners
 NEW_CORNERS = 2  # taken into the search at each look
+PUBLISHED_BAND = 0.02
 SEARCH_SHARE = 0.9  # of the progress bar
 
 Progress = Callable[[float, str], None]
@@ -58,12 +60,11 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     tell(0.0, "designing the start")
     every: list[Corner] = [{}, *(corner for corner in corners(axis.stated.tolerance) if corner)]
     bare, lag = bare_loops(axis)
-    bare = _with_assumed_jerk(axis, bare)
     search, everywhere = Objective(axis, bare, _first_corners(every)), Objective(axis, bare, every)
-    started = _designed(axis, bare, lag, search)
+    started = _designed(axis, bare, search)
     unknowns = space(axis, bare, lag)
     best = _verified(started.loops, everywhere, executor)
-    path = [_step(f"designed: {started.name}", axis, started.loops, executor)]
+    path = [_step(f"designed: prototype of order {started.order}", axis, started.loops, executor)]
     try:
         best = _search(unknowns, started, search, everywhere, best, seed, runs, tell, executor)
     except Stopped:
@@ -87,41 +88,31 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     )
 
 
-def _with_assumed_jerk(axis: CompletedAxis, loops: Loops) -> Loops:
-    """Settings that carry the moves' jerk where any is open, so that sheet and search speak of the same move."""
-    if not any(move.jerk_open for move in axis.moves):
-        return loops
-    values = tuple(move.jerk if move.jerk is not None else 1.0 for move in axis.moves)
-    return replace(loops, move_jerk=values)
-
-
 def _first_corners(every: list[Corner]) -> list[Corner]:
     """A few corners to begin with: nominal, first, last and two between; the worst ones join as they show."""
     places = sorted({0, 1, len(every) // 3, 2 * len(every) // 3, len(every) - 1} & set(range(len(every))))
     return [every[place] for place in places]
 
 
-def _designed(axis: CompletedAxis, bare: Loops, lag: float, search: Objective) -> Candidate:
-    """The design that does best on the first corners."""
+def _designed(axis: CompletedAxis, bare: Loops, search: Objective) -> Designed:
+    """The design that does best on the first corners: for the published band of 2 %, and for the axis's own."""
+    plants = extreme_plants(axis)
+    corners = [search.sampled(plant) for plant in plants]
+    rates, wishes = axis.drive.rates, axis.stated.tuning
+    inertia = axis.plant().total_inertia
 
-    def holds(loops: Loops) -> bool:
-        return search.margins(loops) == 0.0
+    def design(band: float) -> Designed:
+        return designed_start(bare, plants, corners, rates, inertia, band, wishes)
 
-    window = axis.stated.window.position * (1.0 - axis.stated.tuning.kept_back)
-    found = list(designs(axis, bare, lag, 0.02, holds))
-    if not found:
-        raise NotComputable(
-            "no design holds the asked margins at every corner: the transmission is too soft or the drive too slow for "
-            "them; ask for smaller margins in [tuning] or stiffen the transmission"
-        )
-    excited = search.largest_following_error(found[0].loops)
-    found += list(designs(axis, bare, lag, own_band(window, excited), holds))
-    return min(found, key=lambda candidate: search.score(candidate.loops)[0])
+    window = axis.stated.window.position * (1.0 - wishes.kept_back)
+    published = design(PUBLISHED_BAND)
+    own = design(own_band(window, search.largest_following_error(published.loops)))
+    return min(published, own, key=lambda found: search.score(found.loops)[0])
 
 
 def _search(
     unknowns: Space,
-    started: Candidate,
+    started: Designed,
     search: Objective,
     everywhere: Objective,
     best: _Best,
@@ -156,7 +147,7 @@ def _search(
 
 
 def _first_population(
-    unknowns: Space, started: Candidate, search: Objective, random: np.random.Generator, executor: Executor
+    unknowns: Space, started: Designed, search: Objective, random: np.random.Generator, executor: Executor
 ) -> Population:
     """The designed start and the random points that miss the margins least."""
     points = [random.random(len(unknowns.variables)) for _ in range(SCREENED)]
