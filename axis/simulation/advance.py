@@ -1,11 +1,11 @@
-"""The axis over one segment of a current period, voltage held: one exact matrix where friction is constant, else series."""
+"""The axis over one segment of a current period, voltage held: one matrix where friction is constant, else series."""
 
 from __future__ import annotations
 
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled_part
 from axis.simulation.observer import observe
 from axis.simulation.plant import (
     ANGLE,
@@ -34,7 +34,7 @@ BULGE = 4.0 / 27.0  # of slope times step: the most that a cubic rises above its
 EVENTS = 64  # stops and starts looked for in one segment; a real axis shows a handful
 
 
-@compiled
+@compiled_part
 def by_series(
     x: Array, senses: Whole, p: Array, voltage: float, step: float, o: Array, time: float, rest_offset: float, c: Array
 ) -> None:
@@ -52,7 +52,7 @@ def by_series(
         pieces += 1
 
 
-@compiled
+@compiled_part
 def torque_on_load(p: Array, speed: float, twist: float, load: float, current: float) -> float:
     """Torque on the load without its Coulomb friction."""
     if p[RIGID] != 0.0:
@@ -60,7 +60,7 @@ def torque_on_load(p: Array, speed: float, twist: float, load: float, current: f
     return p[SPRING] * twist + p[DASHPOT] * (speed - load) - p[DRAG] * load - p[PULL]
 
 
-@compiled
+@compiled_part
 def advance(
     x: Array,
     senses: Whole,

@@ -7,7 +7,7 @@ import math
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled_part
 from axis.simulation.layout import (
     BUCKET_CAPACITY,
     CONTINUOUS_CURRENT,
@@ -55,7 +55,7 @@ DRIVE_SIZE = MEMORY + 2 * MAX_FILTERS
 EMPTIED = 0.9  # of the bucket's capacity: below it the peak current is allowed again
 
 
-@compiled
+@compiled_part
 def measured(angle: float, count: float) -> float:
     """What an encoder reads.
 
@@ -69,7 +69,7 @@ def measured(angle: float, count: float) -> float:
     return count * math.floor(angle / count + 0.5) if count > 0.0 else angle
 
 
-@compiled
+@compiled_part
 def bucket_level(level: float, current: float, continuous: float, period: float) -> float:
     """The current-time bucket after one more sample: it fills above the continuous current and empties below it.
 
@@ -84,13 +84,13 @@ def bucket_level(level: float, current: float, continuous: float, period: float)
     return max(0.0, level + (current * current - continuous * continuous) * period)
 
 
-@compiled
+@compiled_part
 def position_sample(u: Array, gains: Array, angle: float) -> None:
     """Speed command from the position error; the set-point stands already in the drive."""
     u[SPEED_COMMAND] = gains[POSITION_GAIN] * (u[SET_POSITION] - angle)
 
 
-@compiled
+@compiled_part
 def filtered_torque(u: Array, gains: Array, torque: float) -> float:
     """The torque behind all filters, each in transposed direct form."""
     for n in range(int(gains[FILTER_COUNT])):
@@ -102,7 +102,7 @@ def filtered_torque(u: Array, gains: Array, torque: float) -> float:
     return torque
 
 
-@compiled
+@compiled_part
 def velocity_sample(u: Array, gains: Array, frame: Array, limits: Array, angle: float) -> bool:
     """Current command from speed error, feedforward, filters and current limit; True while limited."""
     raw = (angle - u[LAST_ANGLE]) / (frame[CURRENT_PERIOD] * frame[VELOCITY_EVERY])
@@ -126,7 +126,7 @@ def velocity_sample(u: Array, gains: Array, frame: Array, limits: Array, angle: 
     return True
 
 
-@compiled
+@compiled_part
 def current_sample(u: Array, gains: Array, limits: Array, p: Array, speed: float, current: float) -> bool:
     """Voltage from current error, within the voltage circle at zero d-axis current; True while limited."""
     error = u[COMMAND] - current
@@ -143,9 +143,9 @@ def current_sample(u: Array, gains: Array, limits: Array, p: Array, speed: float
     return True
 
 
-@compiled
+@compiled_part
 def fill_bucket(u: Array, limits: Array, current: float, period: float) -> None:
-    """Count the current-time bucket; once full it holds the current at the continuous one until it has emptied a little."""
+    """Count the current-time bucket; once full it allows the continuous current until a tenth has drained."""
     capacity = limits[BUCKET_CAPACITY]
     u[BUCKET] = bucket_level(u[BUCKET], current, limits[CONTINUOUS_CURRENT], period)
     if u[BUCKET] >= capacity:
@@ -154,7 +154,7 @@ def fill_bucket(u: Array, limits: Array, current: float, period: float) -> None:
         u[FULL] = 0.0
 
 
-@compiled
+@compiled_part
 def hold_still(u: Array, gains: Array, frame: Array, p: Array) -> float:
     """Set the drive as it stands before the first move, holding the static load at rest; returns its current [A]."""
     current = p[PULL] / p[K_TORQUE]

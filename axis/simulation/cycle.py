@@ -7,7 +7,7 @@ import math
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled, compiled_part
 from axis.motion.pieces import evaluate_piece
 from axis.simulation.advance import advance
 from axis.simulation.controller import (
@@ -69,7 +69,7 @@ from axis.simulation.layout import (
     WINDOW,
     WINDOW_SAMPLES,
 )
-from axis.simulation.observer import AIM, BAND, BEYOND, LAST_OUTSIDE, OBSERVER_SIZE, SENSE, SHORT
+from axis.simulation.observer import AIM, BAND, BEYOND, INSIDE, LAST_OUTSIDE, OBSERVER_SIZE, SENSE, SHORT
 from axis.simulation.plant import (
     ANGLE,
     COLUMNS,
@@ -95,15 +95,15 @@ from axis.simulation.series import SERIES_ROWS, TERMS
 Array = npt.NDArray[np.float64]
 Whole = npt.NDArray[np.int64]
 
-on_piece = compiled(evaluate_piece)
+on_piece = compiled_part(evaluate_piece)
 
 SAME = 0.01  # of the window: records closer than this are one
 KEPT = 5  # cycles whose worst counts where no two agree
 
 
-@compiled
+@compiled_part
 def set_point(pieces: Array, first: int, last: int, time: float, u: Array, start: float, target: float) -> None:
-    """Put the set-point at `time` [s] of a move into the drive: exact on its cubic, at rest on the target afterwards."""
+    """Put the set-point at `time` [s] of a move into the drive: exact on its cubic, at rest afterwards."""
     since = time
     for n in range(first, last):
         if since < pieces[n, 0]:
@@ -118,7 +118,7 @@ def set_point(pieces: Array, first: int, last: int, time: float, u: Array, start
     u[SET_ACCELERATION] = 0.0
 
 
-@compiled
+@compiled_part
 def clear(figures: Array) -> None:
     """No move has been seen yet."""
     for f in range(FIGURES_SIZE):
@@ -127,22 +127,22 @@ def clear(figures: Array) -> None:
     figures[SIGNAL_LAST] = math.inf
 
 
-@compiled
-def signal(figures: Array, inside: bool, waited: int, needed: int, time: float) -> int:
-    """The drive's in-position signal at one position sample; returns the samples it has been inside, −1 outside."""
+@compiled_part
+def signal(figures: Array, o: Array, inside: bool, needed: float, time: float) -> None:
+    """The drive's in-position signal at one position sample: it stands once `needed` periods were spent inside."""
     if not inside:
-        if waited >= needed:
+        if o[INSIDE] >= needed:
             figures[SIGNAL_LOSSES] += 1.0
-        return -1
-    waited += 1
-    if waited == needed:
+        o[INSIDE] = -1.0
+        return
+    o[INSIDE] += 1.0
+    if o[INSIDE] == needed:
         if math.isinf(figures[SIGNAL]):
             figures[SIGNAL] = time
         figures[SIGNAL_LAST] = time
-    return waited
 
 
-@compiled
+@compiled_part
 def conclude(figures: Array, o: Array, y: float, constant: float) -> None:
     """Take over what the observer kept, at the end of the dwell."""
     outside = abs(y - o[AIM]) > o[BAND]
@@ -157,7 +157,7 @@ def conclude(figures: Array, o: Array, y: float, constant: float) -> None:
         figures[SIGNAL_EARLY] = figures[TIME_TO_WINDOW] - figures[SIGNAL]
 
 
-@compiled
+@compiled_part
 def write_trace(trace: Array, row: int, time: float, setpoint: float, x: Array, u: Array, rest_offset: float) -> None:
     """One row of the trace."""
     trace[row, TRACE_TIME] = time
@@ -172,7 +172,7 @@ def write_trace(trace: Array, row: int, time: float, setpoint: float, x: Array, 
     trace[row, TRACE_LOAD_POSITION] = x[ANGLE] - x[TWIST] + rest_offset
 
 
-@compiled
+@compiled_part
 def run_move(
     x: Array,
     senses: Whole,
@@ -196,13 +196,12 @@ def run_move(
     c: Array,
     new: Array,
 ) -> float:
-    """Run one move with its dwell; returns the largest difference [rad] of the load from the record, which it replaces."""
+    """Run one move with its dwell; returns how far [rad] the load is from the record, which it replaces."""
     period = frame[CURRENT_PERIOD]
     velocity_every, position_every = int(frame[VELOCITY_EVERY]), int(frame[POSITION_EVERY])
     wait = frame[COMPUTATION_DELAY]
     rest = period - wait
     target, start = base + move[TARGET], base + move[START]
-    needed = int(frame[WINDOW_SAMPLES])
     samples = int(move[PERIODS]) * position_every * velocity_every
     quiet = period * samples - 0.25 * (period * samples - move[DURATION])
     clear(figures)
@@ -210,7 +209,7 @@ def run_move(
         o[n] = 0.0
     o[AIM], o[BAND], o[SENSE] = target, frame[WINDOW], move[DIRECTION]
     u[TRIP] = 0.0
-    waited = -1
+    o[INSIDE] = -1.0
     difference = 0.0
     low, high = math.inf, -math.inf
     k = 0
@@ -225,7 +224,7 @@ def run_move(
         difference = max(difference, abs(y - base - record[n]))
         record[n] = y - base
         if time >= move[DURATION]:
-            waited = signal(figures, abs(angle - target) <= frame[WINDOW], waited, needed, time)
+            signal(figures, o, abs(angle - target) <= frame[WINDOW], frame[WINDOW_SAMPLES], time)
         if not abs(y) < math.inf:
             return math.inf
         for _ in range(position_every):
@@ -247,10 +246,12 @@ def run_move(
                     low, high = min(low, current), max(high, current)
                 if tracing:
                     write_trace(trace, trace_row + k, time, u[SET_POSITION], x, u, rest_offset)
-                if wait > 0.0:
-                    advance(x, senses, p, matrices, 0, before, wait, o, time, rest_offset, c, new)
-                if rest > 0.0:
-                    advance(x, senses, p, matrices, 1, u[VOLTAGE], rest, o, time + wait, rest_offset, c, new)
+                for segment in range(SEGMENTS):
+                    voltage = before if segment == 0 else u[VOLTAGE]
+                    length = wait if segment == 0 else rest
+                    if length > 0.0:
+                        since = time if segment == 0 else time + wait
+                        advance(x, senses, p, matrices, segment, voltage, length, o, since, rest_offset, c, new)
                 k += 1
     figures[TRIPPED] = u[TRIP]
     figures[CURRENT_RIPPLE] = max(high - low, 0.0)
@@ -258,7 +259,7 @@ def run_move(
     return difference
 
 
-@compiled
+@compiled_part
 def diverge(figures: Array) -> None:
     """An unstable loop has no figures."""
     for m in range(figures.shape[0]):
@@ -266,13 +267,13 @@ def diverge(figures: Array) -> None:
             figures[m, f] = math.inf
 
 
-@compiled
-def keep_worst(kept: Array, first: int, count: int, figures: Array) -> None:
+@compiled_part
+def keep_worst(kept: Array, first: int, last: int, figures: Array) -> None:
     """The worst of the kept cycles, figure by figure; of rest errors the larger in size, of signals the latest."""
     for m in range(figures.shape[0]):
         for f in range(FIGURES_SIZE):
             worst = kept[first, m, f]
-            for n in range(first + 1, first + count):
+            for n in range(first + 1, last):
                 other = kept[n, m, f]
                 if (abs(other) > abs(worst)) if f == REST_ERROR else (other > worst):
                     worst = other
@@ -358,9 +359,10 @@ def simulate(
         rise[0] = u[BUCKET] - level
         base += moves[count - 1, TARGET]
         if cycle > 0 and difference <= SAME * frame[WINDOW]:
-            keep_worst(kept, cycle % KEPT, 1, figures)
+            keep_worst(kept, cycle % KEPT, cycle % KEPT + 1, figures)
             return cycle + 1
-    keep_worst(kept, 0, min(max_cycles, KEPT), figures)
+    last = min(max_cycles, KEPT)
+    keep_worst(kept, last - last, last, figures)
     return -max_cycles
 
 
@@ -377,7 +379,7 @@ def simulate_corners(
     figures: Array,
     cycles: Whole,
 ) -> None:
-    """`simulate` for every row of plants [corners, moves, PLANT_SIZE] and limits [corners, LIMITS_SIZE], without traces."""
+    """`simulate` for each of plants [corners, moves, PLANT_SIZE] and limits [corners, LIMITS_SIZE], no traces."""
     trace = np.zeros((0, 0))
     rise = np.zeros(1)
     for n in range(plants.shape[0]):

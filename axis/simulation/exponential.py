@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled_part
 
 Array = npt.NDArray[np.float64]
 
@@ -14,7 +14,7 @@ NORM = 0.5  # the series is summed below it, and doubled back from there
 TERMS = 18
 
 
-@compiled
+@compiled_part
 def product(left: Array, right: Array, result: Array) -> None:
     """result = left·right."""
     for row in range(ORDER):
@@ -25,7 +25,7 @@ def product(left: Array, right: Array, result: Array) -> None:
             result[row, column] = total
 
 
-@compiled
+@compiled_part
 def balance(matrix: Array, scales: Array) -> None:
     """Scale the variables by powers of two until rows and columns weigh about the same, as LAPACK's gebal does.
 
@@ -60,7 +60,7 @@ def balance(matrix: Array, scales: Array) -> None:
             break
 
 
-@compiled
+@compiled_part
 def largest(matrix: Array) -> float:
     """Largest row sum."""
     result = 0.0
@@ -72,7 +72,7 @@ def largest(matrix: Array) -> float:
     return result
 
 
-@compiled
+@compiled_part
 def exponential(matrix: Array, duration: float, once: Array, first: Array, second: Array) -> None:
     """Exponential of a 4×4 system over a time and its two integrals, by a Taylor series and doubling.
 

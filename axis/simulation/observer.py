@@ -7,7 +7,7 @@ import math
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled_part
 
 Array = npt.NDArray[np.float64]
 
@@ -20,11 +20,12 @@ Array = npt.NDArray[np.float64]
     REACHED,  # [1] 1 once the load has been at or beyond its target
     BEYOND,  # [rad] farthest beyond
     SHORT,  # [rad] farthest short of it afterwards
+    INSIDE,  # [1] position samples that the measured position has been inside, −1 outside
     OBSERVER_SIZE,
-) = range(8)
+) = range(9)
 
 
-@compiled
+@compiled_part
 def hermite(s: float, e0: float, d0: float, e1: float, d1: float) -> float:
     """Cubic through two positions with their slopes.
 
@@ -41,7 +42,7 @@ def hermite(s: float, e0: float, d0: float, e1: float, d1: float) -> float:
     return e0 + s * (d0 + s * ((3.0 * rise - 2.0 * d0 - d1) + s * (d0 + d1 - 2.0 * rise)))
 
 
-@compiled
+@compiled_part
 def turning_point(e0: float, d0: float, e1: float, d1: float) -> float:
     """Where the cubic of `hermite` turns, its slopes at both ends having different signs.
 
@@ -65,9 +66,9 @@ def turning_point(e0: float, d0: float, e1: float, d1: float) -> float:
     return (root - half) / cube if cube != 0.0 else -0.5 * d0 / half
 
 
-@compiled
+@compiled_part
 def crossing(level: float, inside: float, e0: float, d0: float, e1: float, d1: float) -> float:
-    """Where the cubic of `hermite` comes back to a level, between a share of the step at which it is outside and its end.
+    """Where the cubic of `hermite` comes back to a level, between a share of the step that is outside and its end.
 
     Parameters
         level [rad]: edge of the window
@@ -91,7 +92,7 @@ def crossing(level: float, inside: float, e0: float, d0: float, e1: float, d1: f
     return within
 
 
-@compiled
+@compiled_part
 def observe(o: Array, time: float, step: float, y0: float, v0: float, y1: float, v1: float) -> None:
     """Take note of one exact step of the load: position [rad] and speed [rad/s] at its ends."""
     e0, e1 = (y0 - o[AIM]) * o[SENSE], (y1 - o[AIM]) * o[SENSE]

@@ -11,7 +11,7 @@ import math
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled_part
 from axis.simulation.exponential import ORDER, exponential
 from axis.simulation.layout import (
     BREAKAWAY,
@@ -64,7 +64,7 @@ COLUMNS = 7  # motor speed, twist, load speed, current; voltage, motor friction,
 FADED = 6.1  # exp(−6.1²) is below half a unit in the last place of one
 
 
-@compiled
+@compiled_part
 def prepare(plant: Array, prepared: Array) -> None:
     """Bring one plant into the form that the kernel uses; an infinite stiffness makes one inertia of two."""
     rigid = math.isinf(plant[STIFFNESS])
@@ -92,7 +92,7 @@ def prepare(plant: Array, prepared: Array) -> None:
     prepared[CROSS_VOLTAGE] = plant[POLE_PAIRS] * plant[INDUCTANCE]
 
 
-@compiled
+@compiled_part
 def state_matrix(p: Array, motor_rests: bool, load_rests: bool, matrix: Array) -> None:
     """D of the free motion, rows and columns motor speed, twist, load speed, current; a resting side is a zero row."""
     for row in range(ORDER):
@@ -119,7 +119,7 @@ def state_matrix(p: Array, motor_rests: bool, load_rests: bool, matrix: Array) -
         matrix[2, 2] = -(p[DASHPOT] + p[DRAG]) / p[J_LOAD]
 
 
-@compiled
+@compiled_part
 def transitions(p: Array, first_time: float, second_time: float, result: Array) -> None:
     """Exact transition of the state over both segments of a current period in all modes.
 

@@ -2,7 +2,7 @@
 
 The series are scaled: coefficient n stands for xₙ·hⁿ, so that the sum of a row is the state at the end of the step and
 the state at a share s of it is the polynomial in s. Motion stops where the polynomial of a speed reaches zero, and
-starts where the polynomial of the torque on a resting side reaches its holding friction: both are located, not stepped over.
+starts where the polynomial of the torque on a resting side reaches its holding friction: both are located.
 """
 
 from __future__ import annotations
@@ -10,7 +10,7 @@ from __future__ import annotations
 import numpy as np
 import numpy.typing as npt
 
-from axis.compiled import compiled
+from axis.compiled import compiled_part
 from axis.mechanics.friction import stribeck
 from axis.simulation.plant import (
     ANGLE,
@@ -39,18 +39,20 @@ from axis.simulation.plant import (
 Array = npt.NDArray[np.float64]
 Whole = npt.NDArray[np.int64]
 
-dry_friction = compiled(stribeck)
+dry_friction = compiled_part(stribeck)
 
 TERMS = 20
 ACCURACY = 1e-14  # of the largest term of each state: where the series may end
 SHORTEST = 10  # halvings of a step that does not converge
 CHECKS = 4  # points of a step at which events are looked for
 
-# Rows of the series beyond the state itself.
-EXPONENT, FADING, ON_LOAD, ON_MOTOR, SERIES_ROWS = range(5, 10)
+MOTOR, LOAD = range(2)  # sides of the spring
+
+# Rows of the series beyond the state itself; the torques on the sides are those without their dry friction.
+EXPONENT, FADING, ON_MOTOR, ON_LOAD, SERIES_ROWS = range(5, 10)
 
 
-@compiled
+@compiled_part
 def value(c: Array, row: int, order: int, s: float) -> float:
     """The polynomial of a row at a share s of the step."""
     result = c[row, order]
@@ -59,7 +61,7 @@ def value(c: Array, row: int, order: int, s: float) -> float:
     return result
 
 
-@compiled
+@compiled_part
 def slope_from_rest(c: Array, row: int, order: int, s: float) -> float:
     """The polynomial of a row that starts at zero, divided by s: its sign away from the start."""
     result = c[row, order]
@@ -68,7 +70,7 @@ def slope_from_rest(c: Array, row: int, order: int, s: float) -> float:
     return result
 
 
-@compiled
+@compiled_part
 def converged(c: Array, n: int) -> bool:
     """The last two terms of every state are below the accuracy asked."""
     for row in range(MOTOR_SPEED, CURRENT + 1):
@@ -80,7 +82,7 @@ def converged(c: Array, n: int) -> bool:
     return True
 
 
-@compiled
+@compiled_part
 def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float, step: float) -> int:
     """Fill the series of the state from its constant terms; returns the order at which they end.
 
@@ -90,18 +92,17 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
     fades = load_sense != 0 and p[FADING_SPEED] > 0.0 and abs(c[LOAD_SPEED, 0]) <= 2.0 * p[FAST]
     per_square = -1.0 / (p[FADING_SPEED] * p[FADING_SPEED]) if fades else 0.0
     rigid = p[RIGID] != 0.0
-    n = 0
-    while True:
+    for n in range(TERMS + 1):
         speed, twist, load, current = c[MOTOR_SPEED, n], c[TWIST, n], c[LOAD_SPEED, n], c[CURRENT, n]
         torque = p[K_TORQUE] * current
         spring = torque if rigid else p[SPRING] * twist + p[DASHPOT] * (speed - load)
         on_load = spring - p[DRAG] * load
         on_motor = torque - spring
-        friction = 0.0
+        friction, drag = 0.0, 0.0
         if n == 0:
             on_load -= p[PULL]
-            on_motor -= motor_sense * p[MOTOR_DRAG]
             friction = load_sense * p[SLIDING]
+            drag = motor_sense * p[MOTOR_DRAG]
         if fades:
             if n == 0:
                 excess = dry_friction(load, p[SLIDING], p[HOLDING], p[FADING_SPEED]) - p[SLIDING]
@@ -120,7 +121,7 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
         c[ON_LOAD, n] = on_load
         c[ON_MOTOR, n] = on_motor
         if n == TERMS or (n >= 3 and converged(c, n)):
-            return n
+            break
         share = step / (n + 1.0)
         c[ANGLE, n + 1] = share * speed
         c[LOAD_SPEED, n + 1] = 0.0 if load_sense == 0 else share * (on_load - friction) / p[J_LOAD]
@@ -128,16 +129,16 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
             c[MOTOR_SPEED, n + 1] = c[LOAD_SPEED, n + 1]
             c[TWIST, n + 1] = 0.0
         else:
-            c[MOTOR_SPEED, n + 1] = 0.0 if motor_sense == 0 else share * on_motor / p[J_MOTOR]
+            c[MOTOR_SPEED, n + 1] = 0.0 if motor_sense == 0 else share * (on_motor - drag) / p[J_MOTOR]
             c[TWIST, n + 1] = share * (speed - load)
         drop = -p[OHMS] * current - p[K_VOLTAGE] * speed
         if n == 0:
             drop += voltage
         c[CURRENT, n + 1] = share * drop / p[HENRYS]
-        n += 1
+    return n
 
 
-@compiled
+@compiled_part
 def shorten(c: Array, order: int) -> float:
     """Halve the step until the last two terms vanish; rescales the series and returns the share of the step left."""
     share = 1.0
@@ -153,7 +154,7 @@ def shorten(c: Array, order: int) -> float:
     return share
 
 
-@compiled
+@compiled_part
 def stops_at(c: Array, row: int, order: int, sense: int) -> float:
     """Share of the step at which a moving side comes to zero speed; above 1: not in this step."""
     reach = 0.0
@@ -182,7 +183,7 @@ def stops_at(c: Array, row: int, order: int, sense: int) -> float:
     return 2.0
 
 
-@compiled
+@compiled_part
 def starts_at(c: Array, row: int, order: int, holding: float) -> float:
     """Share of the step at which the torque on a resting side exceeds what holds it; above 1: not in this step."""
     reach = 0.0
@@ -208,15 +209,7 @@ def starts_at(c: Array, row: int, order: int, holding: float) -> float:
     return 2.0
 
 
-@compiled
-def turn(torque: float, holding: float) -> int:
-    """Sense in which a side at zero speed moves on under a torque: 0 where its friction holds it."""
-    if abs(torque) <= holding:
-        return 0
-    return 1 if torque > 0.0 else -1
-
-
-@compiled
+@compiled_part
 def series_step(x: Array, senses: Whole, p: Array, voltage: float, step: float, events: bool, c: Array) -> float:
     """Advance the state by at most `step` [s], to the next event or as far as the series reaches; returns the time.
 
@@ -238,37 +231,23 @@ def series_step(x: Array, senses: Whole, p: Array, voltage: float, step: float, 
     s = 1.0
     which = -1
     if events:
-        if p[MOTOR_DRAG] > 0.0:
-            if senses[0] == 0:
-                found = starts_at(c, ON_MOTOR, order, p[MOTOR_DRAG])
+        for side in range(2):
+            friction = p[HOLDING] if side == LOAD else p[MOTOR_DRAG]
+            if friction == 0.0:
+                continue
+            if senses[side] == 0:
+                found = starts_at(c, ON_MOTOR + side, order, friction)
             else:
-                found = stops_at(c, MOTOR_SPEED, order, senses[0])
-            if found <= s:
-                s, which = found, 0
-        if p[HOLDING] > 0.0:
-            if senses[1] == 0:
-                found = starts_at(c, ON_LOAD, order, p[HOLDING])
-            else:
-                found = stops_at(c, LOAD_SPEED, order, senses[1])
+                found = stops_at(c, MOTOR_SPEED + 2 * side, order, senses[side])
             if found < s or (found == s and which < 0):
-                s, which = found, 1
+                s, which = found, side
     for row in range(CURRENT + 1):
         x[row] = value(c, row, order, s)
-    if which == 0:
-        # The constant term of ON_MOTOR carries the friction of a moving motor; the decision asks without it.
-        pushed = value(c, ON_MOTOR, order, s) + senses[0] * p[MOTOR_DRAG]
-        x[MOTOR_SPEED] = 0.0
-        senses[0] = turn(pushed, p[MOTOR_DRAG]) if senses[0] != 0 else turn_free(pushed)
-    elif which == 1:
-        pushed = value(c, ON_LOAD, order, s)
-        x[LOAD_SPEED] = 0.0
+    if which >= 0:
+        pushed = value(c, ON_MOTOR + which, order, s)
+        x[MOTOR_SPEED + 2 * which] = 0.0
         if p[RIGID] != 0.0:
             x[MOTOR_SPEED] = 0.0
-        senses[1] = turn(pushed, p[HOLDING]) if senses[1] != 0 else turn_free(pushed)
+        holds = senses[which] != 0 and abs(pushed) <= (p[HOLDING] if which == LOAD else p[MOTOR_DRAG])
+        senses[which] = 0 if holds else (1 if pushed > 0.0 else -1)
     return s * share * step
-
-
-@compiled
-def turn_free(torque: float) -> int:
-    """Sense in which a side moves that has just broken away."""
-    return 1 if torque > 0.0 else -1
