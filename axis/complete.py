@@ -9,7 +9,7 @@ from axis.completion import CompletedAxis, CompletedDrive, CompletedMotor, Compl
 from axis.description.axis import Axis
 from axis.description.drive import Drive
 from axis.description.load import Friction
-from axis.description.motor import Motor
+from axis.description.motor import CurrentBasis, Motor
 from axis.description.moves import Move
 from axis.description.transmission import BallScrew, Gearbox
 from axis.errors import InputError, Problem
@@ -283,7 +283,8 @@ def _constants(motor: Motor, notes: _Notes) -> tuple[float, float]:
 
 
 def _drive(drive: Drive, supply_tolerance: float, notes: _Notes) -> CompletedDrive:
-    basis = notes.assume("drive.current_basis", drive.current_basis, "rms", "rms")
+    usual: CurrentBasis = "rms"
+    basis = notes.assume("drive.current_basis", drive.current_basis, usual, "rms")
     continuous = notes.need("drive.continuous_current", drive.continuous_current, 1.0, '"8 A"')
     peak = notes.assume("drive.peak_current", drive.peak_current, continuous, "the continuous current")
     nominal = drive.dc_link_nominal
