@@ -1,0 +1,94 @@
+"""The look of the screens: one style sheet, and the few pieces of HTML that the pages are made of.
+
+Whatever comes from a user or a file is escaped here, in `text`; nothing of it reaches Markdown.
+"""
+
+from __future__ import annotations
+
+import html
+import math
+from collections.abc import Iterable, Sequence
+from pathlib import Path
+
+from axis.sheet.shown import NOTHING, SHAPES, WORDS
+from axis.verdicts import Verdict
+
+_CLASSES: dict[Verdict, str] = {"pass": "pass", "fail": "fail", "not evaluated": "open", "not applicable": "none"}
+
+STYLE = Path(__file__).with_name("style.css")
+
+
+class Markup(str):
+    """HTML made here; every other text is escaped before it stands in a page."""
+
+
+def text(words: object) -> str:
+    """Words of a user, a file or a result, safe inside HTML."""
+    return html.escape(str(words), quote=True)
+
+
+def verdict(value: Verdict) -> Markup:
+    """A verdict: word, shape and colour."""
+    return Markup(f'<span class="sp-verdict sp-{_CLASSES[value]}"><i>{SHAPES[value]}</i>{WORDS[value]}</span>')
+
+
+def in_title(name: str, value: Verdict, words: str = "") -> str:
+    """A step's name with its verdict beside it, for the navigation."""
+    return f"{name}   {SHAPES[value]} {words or WORDS[value]}"
+
+
+def heading(title: str, value: Verdict, sentence: str) -> str:
+    return f'<div class="sp-head"><h1>{text(title)}</h1>{verdict(value)}<p>{text(sentence)}</p></div>'
+
+
+def part(title: str, note: str = "") -> str:
+    return f'<div class="sp-part" role="heading" aria-level="2">{text(title)} <small>{text(note)}</small></div>'
+
+
+def box(sentence: str, items: Iterable[str] = (), kind: str = "", role: str = "note") -> str:
+    """A framed notice; `kind` is "wrong" or "care" where it is more than a remark."""
+    listed = "".join(f"<li>{text(item)}</li>" for item in items)
+    inner = f"<ul>{listed}</ul>" if listed else ""
+    return f'<div class="sp-box {kind}" role="{role}"><p>{text(sentence)}</p>{inner}</div>'
+
+
+def stale(content: str, grey: bool) -> str:
+    """Results that belong to an earlier input are drawn grey."""
+    return f'<div class="sp-stale" aria-disabled="true">{content}</div>' if grey else content
+
+
+def point(value: str) -> tuple[str, str]:
+    """A number with its unit, cut where the decimal point stands, so that a column can be aligned on it."""
+    number, gap, unit = value.partition(" ")
+    if not number.lstrip("-+±≥≤>").replace(".", "").isdigit():
+        return text(value), ""
+    whole, dot, rest = number.partition(".")
+    return text(whole), text(f"{dot}{rest}{gap}{unit}")
+
+
+def table(head: Sequence[str], rows: Iterable[Sequence[str]], numbers: Sequence[int] = ()) -> str:
+    """A table of escaped text; the columns in `numbers` are aligned on the decimal point."""
+
+    def cell(n: int, value: str, tag: str) -> str:
+        if n not in numbers:
+            return f"<{tag}>{value if isinstance(value, Markup) else text(value)}</{tag}>"
+        if tag == "th":
+            return f'<th colspan="2">{text(value)}</th>'
+        whole, rest = point(value)
+        return f'<td class="w">{whole}</td><td class="f">{rest}</td>'
+
+    def row(values: Sequence[str], tag: str) -> str:
+        return "<tr>" + "".join(cell(n, value, tag) for n, value in enumerate(values)) + "</tr>"
+
+    body = "".join(row(values, "td") for values in rows)
+    return f'<table class="sp-table"><thead>{row(head, "th")}</thead><tbody>{body}</tbody></table>'
+
+
+def margin_bar(margin: float | None, words: str) -> str:
+    """The demand as a bar against the limit, its upright at the right; hatched beyond it where the check fails."""
+    if margin is None or not math.isfinite(margin):
+        return f'<div class="sp-number">{NOTHING}</div>'
+    over = " over" if margin < 0.0 else ""
+    label = f"margin {words}"
+    bar = f'<div class="sp-bar{over}" style="--margin:{margin:.4f}"><u></u></div>'
+    return f'<div role="img" aria-label="{text(label)}">{bar}<small>{text(label)}</small></div>'
