@@ -7,8 +7,10 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from axis.completion import CompletedAxis, at_corner
+from axis.description.moves import Window
 from axis.settling.rest import rest_band
 from axis.simulation.record import MoveOutcome, Outcome
+from axis.units import Quantity, declarations, show
 from axis.verdicts import Check, Verdict, worst
 
 PRESLIDING_WINDOW = 20e-6  # [m] below it the elastic motion of guides before they slide decides whether the load hunts
@@ -153,10 +155,10 @@ def _reason(rule: Rule, move: MoveOutcome, where: str) -> str:
     if rule.id == "signal" and math.isinf(move.signal):
         return f"the signal never comes, {where}"
     if rule.id == "signal" and move.signal_early > 0:
-        return (
-            f"signal at {move.signal * 1e3:.4g} ms, load settled at {move.time_to_window * 1e3:.4g} ms, {where}: "
-            "that signal lies"
-        )
+        settled = f"load settled at {move.time_to_window * 1e3:.4g} ms"
+        if math.isinf(move.time_to_window):
+            settled = "the load never settles"
+        return f"signal at {move.signal * 1e3:.4g} ms, {settled}, {where}: that signal lies"
     return f"worst {where}"
 
 
@@ -169,13 +171,21 @@ def _remedy(axis: CompletedAxis, rule: Rule, move: MoveOutcome, demand: float) -
     if rule.id == "settling":
         return (
             f"settings that bring the load to rest inside the window (settlepoint tune); it ends "
-            f"{abs(move.rest_error):.3g} {'rad' if axis.stated.rotary else 'm'} from its target"
+            f"{_length(axis, 'position', abs(move.rest_error))} from its target"
         )
     if rule.id in ("following_error", "overshoot"):
-        return f"settings that follow closer, a softer move, or a limit of {demand:.3g} {rule.unit}"
+        limit = _length(axis, "max_overshoot" if rule.id == "overshoot" else rule.id, demand)
+        return f"settings that follow closer, a softer move, or a limit of {limit}"
     if rule.id == "speed":
         return "a lower speed of the move"
     return "a longer dwell or a lower acceleration, so that the drive's current-time limit is not reached"
+
+
+def _length(axis: CompletedAxis, name: str, value: float) -> str:
+    """A length in the unit in which the window's field of that name is shown."""
+    declared = declarations(Window)[name]
+    assert isinstance(declared, Quantity)
+    return show(value, declared, axis.stated.rotary)
 
 
 def _stability(outcomes: list[CornerOutcome]) -> tuple[Check, ...]:
