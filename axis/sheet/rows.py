@@ -143,8 +143,8 @@ def headline(study: Study) -> str:
     missed = [check for check in _all_checks(study) if check.verdict == "fail"]
     open_ = [check for check in _all_checks(study) if check.verdict == "not evaluated"]
     if missed:
-        text += f" {_count(len(missed), 'check')} failed: {', '.join(check.name for check in missed[:3])}" + (
-            " and others." if len(missed) > 3 else "."
+        text += f" {_count(len(missed), 'check')} failed: {'; '.join(check.name for check in missed[:3])}" + (
+            "; and others." if len(missed) > 3 else "."
         )
     if open_:
         text += f" {_count(len(open_), 'check')} could not be evaluated."
@@ -264,7 +264,7 @@ def path_rows(study: Study) -> tuple[tuple[str, str, str], ...]:
     return tuple(
         (
             step.name,
-            "never" if math.isinf(step.worst_time) else in_unit(step.worst_time, "s"),
+            "never" if step.failing_corners and math.isinf(step.worst_time) else in_unit(step.worst_time, "s"),
             f"{step.failing_corners} corners miss" if step.failing_corners else "every corner holds",
         )
         for step in study.tuned.path
