@@ -155,7 +155,7 @@ def from_rest(start: float, phases: Iterable[tuple[float, float, float]]) -> Pro
 
     Parameters
         start [m or rad]: position at the start
-        phases [s], [m/s² or rad/s²], [m/s³ or rad/s³]: duration, acceleration at its start, jerk of each phase
+        phases [s; m/s² or rad/s²; m/s³ or rad/s³]: duration, acceleration at its start, jerk of each
     Returns the profile; phases without duration are left out
     Source: [own]
     """

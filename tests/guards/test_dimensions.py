@@ -1,0 +1,179 @@
+"""Rescaling the base units rescales the answer of every closed formula.
+
+Twenty seeded draws a function: random arguments, random factors for kg, m, s, A and K. It finds hidden constants,
+absolute tolerances, lost powers and units that the docstring tells wrong; it cannot find a lost pure number.
+"""
+
+import dataclasses
+import math
+import types
+import typing
+import zlib
+from collections import abc
+
+import numpy as np
+import pytest
+
+from axis.errors import SettlepointError
+from axis.motion.pieces import Profile
+from tests.guards.formulas import (
+    BASE,
+    dimension,
+    field_units,
+    float_parameters,
+    full_name,
+    hints,
+    parameter_units,
+    public_functions,
+    result_units,
+)
+
+DRAWS = 20
+ROOMS = ("mechanics", "motion", "machine", "sizing", "loops")
+PIECE_UNITS = ("s", "m or rad", "m/s or rad/s", "m/s² or rad/s²", "m/s³ or rad/s³")
+
+# Arguments that must lie somewhere special for a formula to have an answer: name of the function → argument → range.
+RANGES = {}
+
+
+def drawable(kind):
+    """Whether an argument of this type can be drawn at random."""
+    origin, parts = typing.get_origin(kind), typing.get_args(kind)
+    if origin is typing.Literal or kind in (float, int):
+        return True
+    if origin in (typing.Union, types.UnionType):
+        return any(drawable(part) for part in parts)
+    if origin in (tuple, list, abc.Sequence, abc.Iterable):
+        return all(part is Ellipsis or drawable(part) for part in parts)
+    return False
+
+
+def readable(function):
+    """Whether the result can be taken apart into numbers with units."""
+    result = hints(function)["return"]
+    if result is Profile or dataclasses.is_dataclass(result):
+        return result is Profile or bool(field_units(result))
+    parts = typing.get_args(result) if typing.get_origin(result) is tuple else (result,)
+    return all(part is float or part is Ellipsis for part in parts)
+
+
+def closed_formulas():
+    for function in public_functions():
+        kinds = {name: kind for name, kind in hints(function).items() if name != "return"}
+        room = full_name(function).split(".")[0]
+        floats = set(float_parameters(function))
+        told = floats and floats <= set(parameter_units(function))
+        if room in ROOMS and told and all(map(drawable, kinds.values())) and readable(function):
+            yield function
+
+
+FORMULAS = list(closed_formulas())
+
+
+def one(unit, reading):
+    """The unit of a text such as `N or N·m` under the first or the second reading."""
+    choices = unit.split(" or ")
+    return choices[min(reading, len(choices) - 1)]
+
+
+def scale(unit, factors):
+    """What a number in this unit is multiplied by when the base units change."""
+    return math.prod(factors[base] ** power for base, power in dimension(unit).items())
+
+
+def draw_argument(draw, kind, bounds):
+    """A random argument; floats over two decades, so that every branch is met."""
+    origin, parts = typing.get_origin(kind), typing.get_args(kind)
+    if origin is typing.Literal:
+        return str(draw.choice(parts))
+    if origin in (typing.Union, types.UnionType):
+        return draw_argument(draw, next(part for part in parts if drawable(part)), bounds)
+    if origin in (tuple, list, abc.Sequence, abc.Iterable):
+        kinds = parts if Ellipsis not in parts and origin is tuple else (parts[0],) * 3
+        return tuple(draw_argument(draw, part, bounds) for part in kinds)
+    if kind is int:
+        return int(draw.integers(*(bounds or (2, 6))))
+    low, high = bounds or (0.1, 10.0)
+    return float(low * (high / low) ** draw.uniform())
+
+
+def rescaled(value, unit, factors, reading):
+    """An argument in other units; `[s; m/s²]` gives the units of the members of a tuple one by one."""
+    units = unit.split("; ")
+    if isinstance(value, tuple) and isinstance(value[0], float) and len(units) == len(value) > 1:
+        return tuple(rescaled(part, own, factors, reading) for part, own in zip(value, units, strict=True))
+    if isinstance(value, tuple):
+        return tuple(rescaled(part, unit, factors, reading) for part in value)
+    return value * scale(one(unit, reading), factors) if isinstance(value, float) else value
+
+
+def numbers(function, result, reading):
+    """(number, unit) for everything in a result."""
+    if isinstance(result, Profile):
+        pieces = result.pieces
+        return [(float(n), one(u, reading)) for row in pieces for n, u in zip(row, PIECE_UNITS, strict=True)]
+    if dataclasses.is_dataclass(result):
+        fields = [(getattr(result, name), one(unit, reading)) for name, unit in field_units(type(result)).items()]
+        return [(n, u) for value, u in fields for n in (value if isinstance(value, tuple) else (value,))]
+    values = result if isinstance(result, tuple) else (result,)
+    units = [one(unit, reading) for unit in result_units(function)]
+    units = units * len(values) if len(units) == 1 else units
+    return list(zip(values, units, strict=True))
+
+
+def answer(function, arguments, reading):
+    try:
+        return numbers(function, function(**arguments), reading)
+    except (SettlepointError, ValueError, ZeroDivisionError, OverflowError):
+        return None
+
+
+@pytest.mark.parametrize("function", FORMULAS, ids=full_name)
+def test_answer_rescales_with_the_units(function):
+    draw = np.random.default_rng(zlib.crc32(full_name(function).encode()))
+    kinds = {name: kind for name, kind in hints(function).items() if name != "return"}
+    units, bounds = parameter_units(function), RANGES.get(full_name(function), {})
+    readings = 2 if any(" or " in unit for unit in units.values()) else 1
+    done = 0
+    for attempt in range(50 * DRAWS):
+        if done == DRAWS:
+            break
+        reading = attempt % readings
+        factors = {base: float(10.0 ** draw.uniform(-2.0, 2.0)) for base in BASE}
+        before = {name: draw_argument(draw, kind, bounds.get(name)) for name, kind in kinds.items()}
+        after = {n: rescaled(v, units.get(n, "1"), factors, reading) for n, v in before.items()}
+        expected, got = answer(function, before, reading), answer(function, after, reading)
+        if expected is None or got is None:
+            assert expected is got, f"has an answer in one set of units alone: {before}"
+            continue
+        assert len(expected) == len(got)
+        biggest = {unit: max(abs(n) for n, u in expected if u == unit) for _, unit in expected}
+        for (value, unit), (other, _) in zip(expected, got, strict=True):
+            near = pytest.approx(
+                value * scale(unit, factors), rel=1e-7, abs=1e-9 * biggest[unit] * scale(unit, factors)
+            )
+            assert other == near, f"{before} in units {factors}"
+        done += 1
+    assert done == DRAWS, f"only {done} of {DRAWS} draws have an answer: give RANGES for it"
+
+
+def test_there_are_formulas_to_look_at():
+    assert len(FORMULAS) > 50
+
+
+@pytest.mark.parametrize("wrong", [lambda t: 3.0 * t + 1e-3, lambda t: t * t, lambda t: max(t, 0.5)])
+def test_the_guard_bites(wrong):
+    """A hidden constant, a wrong power and an absolute floor are each found."""
+
+    def formula(time: float) -> float:
+        """Wrong.
+
+        Parameters
+            time [s]: any
+        Returns [s]
+        """
+        return wrong(time)
+
+    formula.__module__ = "axis.motion.pieces"
+    with pytest.raises(AssertionError):
+        test_answer_rescales_with_the_units(formula)
