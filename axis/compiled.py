@@ -55,7 +55,8 @@ def _gate() -> tuple[Callable[[Any], Any], Callable[[Any], Any]]:
         settings: Any = numba.config
         settings.CACHE_DIR = str(folder)
     whole = numba.njit(cache=folder is not None, nogil=True)
-    part = numba.njit(nogil=True, no_cpython_wrapper=True, no_cfunc_wrapper=True)
+    without_entry: Any = {"no_cpython_wrapper": True, "no_cfunc_wrapper": True}
+    part = numba.njit(nogil=True, **without_entry)
     return whole, part
 
 

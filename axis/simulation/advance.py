@@ -55,9 +55,11 @@ def by_series(
 @compiled_part
 def torque_on_load(p: Array, speed: float, twist: float, load: float, current: float) -> float:
     """Torque on the load without its Coulomb friction."""
+    driving: float = p[SPRING] * twist + p[DASHPOT] * (speed - load)
     if p[RIGID] != 0.0:
-        return p[K_TORQUE] * current - p[DRAG] * load - p[PULL]
-    return p[SPRING] * twist + p[DASHPOT] * (speed - load) - p[DRAG] * load - p[PULL]
+        driving = p[K_TORQUE] * current
+    result: float = driving - p[DRAG] * load - p[PULL]
+    return result
 
 
 @compiled_part

@@ -157,7 +157,7 @@ def fill_bucket(u: Array, limits: Array, current: float, period: float) -> None:
 @compiled_part
 def hold_still(u: Array, gains: Array, frame: Array, p: Array) -> float:
     """Set the drive as it stands before the first move, holding the static load at rest; returns its current [A]."""
-    current = p[PULL] / p[K_TORQUE]
+    current: float = p[PULL] / p[K_TORQUE]
     for n in range(DRIVE_SIZE):
         u[n] = 0.0
     u[COMMAND] = current

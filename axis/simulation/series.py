@@ -55,7 +55,7 @@ EXPONENT, FADING, ON_MOTOR, ON_LOAD, SERIES_ROWS = range(5, 10)
 @compiled_part
 def value(c: Array, row: int, order: int, s: float) -> float:
     """The polynomial of a row at a share s of the step."""
-    result = c[row, order]
+    result: float = c[row, order]
     for n in range(order - 1, -1, -1):
         result = result * s + c[row, n]
     return result
@@ -64,7 +64,7 @@ def value(c: Array, row: int, order: int, s: float) -> float:
 @compiled_part
 def slope_from_rest(c: Array, row: int, order: int, s: float) -> float:
     """The polynomial of a row that starts at zero, divided by s: its sign away from the start."""
-    result = c[row, order]
+    result: float = c[row, order]
     for n in range(order - 1, 0, -1):
         result = result * s + c[row, n]
     return result
