@@ -69,7 +69,8 @@ def order4_denominator(prototype: tuple[float, float, float], lag: float) -> tup
     Parameters
         prototype [1]: α, β, γ of s⁴ + α·s³ + β·s² + γ·s + 1
         lag [s]: Tσ, which alone fixes the speed: ω = 1/(α·Tσ)
-    Returns (β·ω², γ·ω³, ω⁴)
+    Returns [1/s²], [1/s³], [1/s⁴]
+    β·ω², γ·ω³, ω⁴
     Source: [own]
     """
     alpha, beta, gamma = prototype
@@ -84,7 +85,7 @@ def order3_denominator(prototype: tuple[float, float], omega: float, lag: float)
         prototype [1]: α₃, β₃ of s³ + α₃·s² + β₃·s + 1
         omega [rad/s]: natural frequency ω, below 1/(α₃·Tσ); the slower, the more robust
         lag [s]: Tσ
-    Returns (c2, c1, c0)
+    Returns [1/s²], [1/s³], [1/s⁴]: c2, c1, c0
     p = 1/Tσ − α₃·ω;  c2 = β₃·ω² + p·α₃·ω;  c1 = ω³ + p·β₃·ω²;  c0 = p·ω³
     Source: [own]; needs p > 0
     """

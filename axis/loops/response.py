@@ -149,7 +149,8 @@ def delayed_integrator_margins(gain: float, delay: float) -> tuple[float, float]
     Parameters
         gain [1/s]: of the integrator, K
         delay [s]: T_d
-    Returns (π/(2·K·T_d), π/2 − K·T_d)
+    Returns [1], [rad]
+    π/(2·K·T_d), π/2 − K·T_d
     Source: [own]
     """
     return math.pi / (2.0 * gain * delay), math.pi / 2.0 - gain * delay

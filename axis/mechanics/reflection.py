@@ -116,7 +116,7 @@ def output_torques(
         load_force [N or N·m]: that moves the load, its own inertia, friction and gravity included
         load_speed [m/s or rad/s]: of the load; zero is standstill: drag holds nothing and η = 1
         load_acceleration [m/s² or rad/s²]: of the load, for the inertia of the stages
-    Returns [N or N·m] motor shaft first: entry n is what is given to stage n+1, the last is the load force
+    Returns [N·m], the last [N or N·m]: entry n is what is given to stage n+1, the last is the load force
     T_n = T_{n+1}/i_n·(1/η or η_back) + J_n·α_n + drag_n·sign(ω_n)
     Source: [own]; rigid chain, quasi-static
     """

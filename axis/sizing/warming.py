@@ -8,36 +8,46 @@ import numpy as np
 
 from axis.completion import CompletedAxis
 from axis.machine.drive import copper_loss
-from axis.machine.temperature import copper_resistance_ratio
+from axis.machine.temperature import COPPER_COEFFICIENT, TWENTY_CELSIUS, copper_resistance_ratio
 from axis.machine.thermal import TwoBody, periodic_rises
 from axis.sizing.polynomials import Array, product
 from axis.sizing.trace import Trace
 
-_BLOCK = 1e-3  # of the winding's time constant: losses that close together are averaged
+_LEAST_PARTS = 48  # of the cycle, each with its exact mean loss
+_FINEST = 1e-2  # of the winding's time constant: longer cycles take more parts
 
 
 def hottest_winding(axis: CompletedAxis, course: Trace) -> float | None:
     """[K] Hottest instant of the winding once the cycle has been repeated for ever; infinite where it runs away.
 
-    Only copper loss counts. The copper is as warm as the winding's mean; within the cycle its loss follows the current.
+    Only copper loss counts. The copper is as warm as the winding's mean; its loss follows the current in equal parts of
+    the cycle, so that what ripples within a part is averaged.
     """
     motor = axis.motor
     if motor.thermal is None:
         return None
     per_torque = copper_loss(1.0 / motor.torque_constant, motor.resistance)
-    energies = per_torque * course.integral(product(course.torque, course.torque))
-    mean_loss = float(energies.sum()) / course.cycle_time
+    loss = per_torque * product(course.torque, course.torque)
+    mean_loss = float(course.integral(loss).sum()) / course.cycle_time
     mean = mean_winding_temperature(mean_loss, motor.thermal, axis.ambient, motor.constants_temperature)
     if math.isinf(mean):
         return math.inf
     warmer = copper_resistance_ratio(mean, motor.constants_temperature)
-    losses, durations = _blocks(
-        energies * warmer, course.duration, _BLOCK * motor.thermal.winding_housing * motor.thermal.winding_capacity
-    )
-    return axis.ambient + periodic_rises(motor.thermal, losses, durations).peak_winding
+    time_constant = motor.thermal.winding_housing * motor.thermal.winding_capacity
+    parts = max(_LEAST_PARTS, math.ceil(course.cycle_time / (_FINEST * time_constant)))
+    losses = warmer * _mean_losses(course, loss, parts)
+    rises = periodic_rises(motor.thermal, losses.tolist(), [course.cycle_time / parts] * parts)
+    return axis.ambient + rises.peak_winding
 
 
-def mean_winding_temperature(cold_loss: float, body: TwoBody, ambient: float, stated_temperature: float) -> float:
+def mean_winding_temperature(
+    cold_loss: float,
+    body: TwoBody,
+    ambient: float,
+    stated_temperature: float,
+    coefficient: float = COPPER_COEFFICIENT,
+    coefficient_temperature: float = TWENTY_CELSIUS,
+) -> float:
     """Temperature at which a winding whose resistance grows with it comes to rest.
 
     Parameters
@@ -45,24 +55,26 @@ def mean_winding_temperature(cold_loss: float, body: TwoBody, ambient: float, st
         body: winding and housing
         ambient [K]: around the housing
         stated_temperature [K]: where the resistance was stated
+        coefficient [1/K]: of copper
+        coefficient_temperature [K]: to which the coefficient belongs
     Returns [K], infinite where the loss grows faster with the temperature than the heat flows off
-    T = T_a + P·r(T)·(R_wh + R_ha), r the ratio of resistances, which is linear in T
+    T = T_a + P·r(T)·(R_wh + R_ha), r(T) = r_0 + r_1·T the ratio of resistances
     Source: [own]
     """
-    resistance = body.winding_housing + body.housing_ambient
-    at_ambient = copper_resistance_ratio(ambient, stated_temperature)
-    slope = copper_resistance_ratio(ambient + 1.0, stated_temperature) - at_ambient
-    left = 1.0 - cold_loss * resistance * slope
-    if left <= 0.0:
-        return math.inf
-    return ambient + cold_loss * resistance * at_ambient / left
+    heating = cold_loss * (body.winding_housing + body.housing_ambient)
+    at_zero = copper_resistance_ratio(0.0, stated_temperature, coefficient, coefficient_temperature)
+    at_ambient = copper_resistance_ratio(ambient, stated_temperature, coefficient, coefficient_temperature)
+    left = 1.0 - heating * (at_ambient - at_zero) / ambient
+    return (ambient + heating * at_zero) / left if left > 0.0 else math.inf
 
 
-def _blocks(energies: Array, durations: Array, shortest: float) -> tuple[list[float], list[float]]:
-    """Mean loss [W] and duration [s] of neighbouring segments joined until they last `shortest`."""
-    ends = np.cumsum(durations)
-    number = np.floor(ends / max(shortest, 1e-300)).astype(np.int64)
-    last = np.append(np.flatnonzero(np.diff(number)), len(durations) - 1)
-    times = np.diff(np.concatenate([[0.0], ends[last]]))
-    sums = np.diff(np.concatenate([[0.0], np.cumsum(energies)[last]]))
-    return (sums / times).tolist(), times.tolist()
+def _mean_losses(course: Trace, loss: Array, parts: int) -> Array:
+    """[W] Exact mean of the loss over equal parts of the cycle."""
+    ends = np.cumsum(course.duration)
+    times = course.cycle_time / parts * np.arange(1, parts + 1)
+    row = np.minimum(np.searchsorted(ends, times), len(ends) - 1)
+    inside = np.minimum(times - (ends[row] - course.duration[row]), course.duration[row])
+    powers = np.arange(1.0, loss.shape[1] + 1.0)
+    before = np.concatenate([[0.0], np.cumsum(course.integral(loss))])[row]
+    sums = before + (loss[row] / powers * inside[:, None] ** powers).sum(axis=1)
+    return np.diff(np.concatenate([[0.0], sums])) * parts / course.cycle_time

@@ -1,6 +1,5 @@
 """The public functions of the formula rooms, and what their docstrings say of units and sources."""
 
-import dataclasses
 import importlib
 import inspect
 import pkgutil
@@ -72,11 +71,13 @@ def result_units(function):
 
 
 def field_units(cls):
-    """Field name to the bracketed unit of its comment, for the float fields of a dataclass."""
-    source = inspect.getsource(cls)
-    floats = [field.name for field in dataclasses.fields(cls) if "float" in str(field.type)]
-    found = {name: re.search(rf"^\s+{name}: .*?# \[([^\]]+)\]", source, re.MULTILINE) for name in floats}
-    return {name: match[1] for name, match in found.items() if match}
+    """Field name to the bracketed unit of its comment, `[N] or [N·m]` as one; for the float fields of a dataclass."""
+    source, units = inspect.getsource(cls), {}
+    for name, kind in typing.get_type_hints(cls).items():
+        comment = re.search(rf"^\s+{name}: .*?# \[(.+?)\](?: or \[(.+?)\])?", source, re.MULTILINE)
+        if holds_float(kind) and comment:
+            units[name] = " or ".join(filter(None, comment.groups()))
+    return units
 
 
 def source_keys(function):

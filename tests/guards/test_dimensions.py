@@ -23,6 +23,7 @@ from tests.guards.formulas import (
     float_parameters,
     full_name,
     hints,
+    holds_float,
     parameter_units,
     public_functions,
     result_units,
@@ -31,43 +32,48 @@ from tests.guards.formulas import (
 DRAWS = 20
 ROOMS = ("mechanics", "motion", "machine", "sizing", "loops")
 PIECE_UNITS = ("s", "m or rad", "m/s or rad/s", "m/s² or rad/s²", "m/s³ or rad/s³")
+SEQUENCES = (tuple, list, abc.Sequence, abc.Iterable)
 
-# Arguments that must lie somewhere special for a formula to have an answer: name of the function → argument → range.
-RANGES = {}
+
+# ---- which functions ------------------------------------------------------------------------------------------------
 
 
 def drawable(kind):
     """Whether an argument of this type can be drawn at random."""
     origin, parts = typing.get_origin(kind), typing.get_args(kind)
-    if origin is typing.Literal or kind in (float, int):
+    if origin is typing.Literal or kind in (float, int, bool):
         return True
+    if dataclasses.is_dataclass(kind):
+        kinds = typing.get_type_hints(kind)
+        floats = {name for name, one in kinds.items() if holds_float(one)}
+        return all(map(drawable, kinds.values())) and floats <= set(field_units(kind))
     if origin in (typing.Union, types.UnionType):
         return any(drawable(part) for part in parts)
-    if origin in (tuple, list, abc.Sequence, abc.Iterable):
-        return all(part is Ellipsis or drawable(part) for part in parts)
-    return False
+    return origin in SEQUENCES and all(part is Ellipsis or drawable(part) for part in parts)
 
 
 def readable(function):
     """Whether the result can be taken apart into numbers with units."""
     result = hints(function)["return"]
-    if result is Profile or dataclasses.is_dataclass(result):
+    if dataclasses.is_dataclass(result):
         return result is Profile or bool(field_units(result))
-    parts = typing.get_args(result) if typing.get_origin(result) is tuple else (result,)
+    parts = typing.get_args(result) if typing.get_origin(result) in (tuple, list) else (result,)
     return all(part is float or part is Ellipsis for part in parts)
 
 
 def closed_formulas():
     for function in public_functions():
         kinds = {name: kind for name, kind in hints(function).items() if name != "return"}
+        told = set(float_parameters(function)) <= set(parameter_units(function))
         room = full_name(function).split(".")[0]
-        floats = set(float_parameters(function))
-        told = floats and floats <= set(parameter_units(function))
-        if room in ROOMS and told and all(map(drawable, kinds.values())) and readable(function):
+        if room in ROOMS and kinds and told and all(map(drawable, kinds.values())) and readable(function):
             yield function
 
 
 FORMULAS = list(closed_formulas())
+
+
+# ---- arguments at random, and the same in other units ---------------------------------------------------------------
 
 
 def one(unit, reading):
@@ -81,44 +87,61 @@ def scale(unit, factors):
     return math.prod(factors[base] ** power for base, power in dimension(unit).items())
 
 
-def draw_argument(draw, kind, bounds):
+def draw_argument(draw, kind):
     """A random argument; floats over two decades, so that every branch is met."""
     origin, parts = typing.get_origin(kind), typing.get_args(kind)
     if origin is typing.Literal:
         return str(draw.choice(parts))
+    if dataclasses.is_dataclass(kind):
+        return kind(**{name: draw_argument(draw, one) for name, one in typing.get_type_hints(kind).items()})
     if origin in (typing.Union, types.UnionType):
-        return draw_argument(draw, next(part for part in parts if drawable(part)), bounds)
-    if origin in (tuple, list, abc.Sequence, abc.Iterable):
+        return draw_argument(draw, next(part for part in parts if drawable(part)))
+    if origin in SEQUENCES:
         kinds = parts if Ellipsis not in parts and origin is tuple else (parts[0],) * 3
-        return tuple(draw_argument(draw, part, bounds) for part in kinds)
-    if kind is int:
-        return int(draw.integers(*(bounds or (2, 6))))
-    low, high = bounds or (0.1, 10.0)
-    return float(low * (high / low) ** draw.uniform())
+        return tuple(draw_argument(draw, part) for part in kinds)
+    if kind is bool:
+        return bool(draw.integers(2))
+    return int(draw.integers(2, 6)) if kind is int else float(10.0 ** draw.uniform(-1.0, 1.0))
 
 
 def rescaled(value, unit, factors, reading):
-    """An argument in other units; `[s; m/s²]` gives the units of the members of a tuple one by one."""
-    units = unit.split("; ")
-    if isinstance(value, tuple) and isinstance(value[0], float) and len(units) == len(value) > 1:
-        return tuple(rescaled(part, own, factors, reading) for part, own in zip(value, units, strict=True))
+    """An argument in other units.
+
+    `[s; m/s²]` gives the units of the members of a tuple one by one. Of several stages in a row all but the last turn:
+    they take the second reading of `[rad/m or 1]`.
+    """
+    if dataclasses.is_dataclass(value):
+        units = field_units(type(value))
+        parts = {name: getattr(value, name) for name in typing.get_type_hints(type(value))}
+        return type(value)(**{n: rescaled(part, units.get(n, "1"), factors, reading) for n, part in parts.items()})
     if isinstance(value, tuple):
-        return tuple(rescaled(part, unit, factors, reading) for part in value)
-    return value * scale(one(unit, reading), factors) if isinstance(value, float) else value
+        units = unit.split("; ")
+        if isinstance(value[0], tuple) or len(units) == 1:
+            units = [unit] * len(value)
+        last = len(value) - 1
+        rows = dataclasses.is_dataclass(value[0])
+        return tuple(
+            rescaled(part, own, factors, 1 if rows and n < last else reading)
+            for n, (part, own) in enumerate(zip(value, units, strict=True))
+        )
+    return value * scale(one(unit, reading), factors) if type(value) is float else value
+
+
+# ---- the answers ----------------------------------------------------------------------------------------------------
 
 
 def numbers(function, result, reading):
     """(number, unit) for everything in a result."""
     if isinstance(result, Profile):
-        pieces = result.pieces
-        return [(float(n), one(u, reading)) for row in pieces for n, u in zip(row, PIECE_UNITS, strict=True)]
+        return [(float(n), one(u, reading)) for row in result.pieces for n, u in zip(row, PIECE_UNITS, strict=True)]
     if dataclasses.is_dataclass(result):
         fields = [(getattr(result, name), one(unit, reading)) for name, unit in field_units(type(result)).items()]
         return [(n, u) for value, u in fields for n in (value if isinstance(value, tuple) else (value,))]
-    values = result if isinstance(result, tuple) else (result,)
+    values = result if isinstance(result, tuple | list) else (result,)
     units = [one(unit, reading) for unit in result_units(function)]
-    units = units * len(values) if len(units) == 1 else units
-    return list(zip(values, units, strict=True))
+    if len(units) < len(values):  # "[1], the last [rad/m or 1]", or one unit for all
+        units = units[:1] * (len(values) - 1) + units[-1:]
+    return list(zip(values, units[: len(values)], strict=True))
 
 
 def answer(function, arguments, reading):
@@ -132,29 +155,26 @@ def answer(function, arguments, reading):
 def test_answer_rescales_with_the_units(function):
     draw = np.random.default_rng(zlib.crc32(full_name(function).encode()))
     kinds = {name: kind for name, kind in hints(function).items() if name != "return"}
-    units, bounds = parameter_units(function), RANGES.get(full_name(function), {})
-    readings = 2 if any(" or " in unit for unit in units.values()) else 1
+    units = parameter_units(function)
     done = 0
     for attempt in range(50 * DRAWS):
         if done == DRAWS:
             break
-        reading = attempt % readings
+        reading = attempt % 2
         factors = {base: float(10.0 ** draw.uniform(-2.0, 2.0)) for base in BASE}
-        before = {name: draw_argument(draw, kind, bounds.get(name)) for name, kind in kinds.items()}
-        after = {n: rescaled(v, units.get(n, "1"), factors, reading) for n, v in before.items()}
+        before = {name: draw_argument(draw, kind) for name, kind in kinds.items()}
+        after = {name: rescaled(value, units.get(name, "1"), factors, reading) for name, value in before.items()}
         expected, got = answer(function, before, reading), answer(function, after, reading)
         if expected is None or got is None:
             assert expected is got, f"has an answer in one set of units alone: {before}"
             continue
         assert len(expected) == len(got)
-        biggest = {unit: max(abs(n) for n, u in expected if u == unit) for _, unit in expected}
         for (value, unit), (other, _) in zip(expected, got, strict=True):
-            near = pytest.approx(
-                value * scale(unit, factors), rel=1e-7, abs=1e-9 * biggest[unit] * scale(unit, factors)
-            )
+            size = max(abs(number) for number, its in expected if its == unit)
+            near = pytest.approx(value * scale(unit, factors), rel=1e-7, abs=1e-9 * size * scale(unit, factors))
             assert other == near, f"{before} in units {factors}"
         done += 1
-    assert done == DRAWS, f"only {done} of {DRAWS} draws have an answer: give RANGES for it"
+    assert done == DRAWS, f"only {done} of {DRAWS} draws have an answer"
 
 
 def test_there_are_formulas_to_look_at():
