@@ -78,7 +78,8 @@ def step_response(numerator: Sequence[float], denominator: Sequence[float]) -> S
     """Step response of a stable transfer function that passes constant signals.
 
     Parameters
-        numerator, denominator: coefficients, highest power of s first
+        numerator [1]: coefficients, highest power of s first; time in the unit that s is counted in
+        denominator [1]: likewise
     Returns the response
     y⁽ᵏ⁾(0) are the coefficients of G(s) = N/D in powers of 1/s, by long division
     Source: [own]

@@ -53,7 +53,10 @@ def plant_matrices(plant: ShaftPlant) -> tuple[Matrix, Matrix]:
 
 
 def held(a: Matrix, b: Matrix, duration: float) -> tuple[Matrix, Matrix]:
-    """Transition over `duration` [s] and response to an input that is held over it: both from one exponential."""
+    """Transition over `duration` [s] and response to an input that is held over it: both from one exponential.
+
+    Source: [franklin]
+    """
     order = len(b)
     block = np.zeros((order + 1, order + 1))
     block[:order, :order] = a * duration

@@ -122,7 +122,9 @@ def largest_gain(square: Complex, power: Complex) -> float:
 def sensitivity_at(angle: float, matrix: Real, inputs: Real, outputs: Real, direct: Real, work: Complex) -> float:
     """Largest singular value of D + C·(z·1 − M)⁻¹·B at z = e^{j·angle}, M in Hessenberg form.
 
-    work: n + 3·m rows and n + m columns, for n states and m inputs.
+    `angle` [rad] per sample; work: n + 3·m rows and n + m columns, for n states and m inputs.
+    Returns [1]
+    Source: [own]
     """
     n, m = inputs.shape
     z = complex(math.cos(angle), math.sin(angle))
@@ -165,7 +167,11 @@ def sensitivity_at(angle: float, matrix: Real, inputs: Real, outputs: Real, dire
 
 @compiled
 def peak_over(angles: Real, matrix: Real, inputs: Real, outputs: Real, direct: Real, refine_above: float) -> float:
-    """Largest `sensitivity_at` over increasing angles; peaks above `refine_above` are searched between neighbours."""
+    """Largest `sensitivity_at` over increasing angles; peaks above `refine_above` [1] are searched between neighbours.
+
+    Returns [1]
+    Source: [own]
+    """
     count = angles.shape[0]
     n, m = inputs.shape
     values = np.empty(count)

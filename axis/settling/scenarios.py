@@ -51,7 +51,11 @@ def commanded(axis: CompletedAxis, loops: Loops) -> tuple[CommandedMove, ...]:
 
 
 def scenario(axis: CompletedAxis, loops: Loops, corner: Mapping[str, float], window: float | None = None) -> Scenario:
-    """The axis at one corner under the given settings; the drive itself knows only the nominal axis."""
+    """The axis at one corner under the given settings; the drive itself knows only the nominal axis.
+
+    `window` [m or rad] in place of the stated one, for a search that keeps a share of it back.
+    Source: [own]
+    """
     there = at_corner(axis, corner)
     return Scenario(
         plants=tuple(there.move_plant(move) for move in there.moves),

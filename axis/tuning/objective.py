@@ -168,7 +168,12 @@ def corner_score(figures: Array, durations: Array, wanted: Conditions) -> float:
 
 
 def move_violation(at: Array, duration: float, wanted: Conditions) -> float:
-    """How far one move misses the verdict's conditions; 0 where it meets all of them."""
+    """How far one move misses the verdict's conditions; 0 where it meets all of them.
+
+    `duration` [s] to the commanded end.
+    Returns [1], each condition as a share of what is wanted
+    Source: [own]
+    """
     if not math.isfinite(at[FOLLOWING_ERROR]):
         return 1e3
     missed = 0.0
@@ -193,7 +198,8 @@ def extreme_plants(axis: CompletedAxis) -> list[ShaftPlant]:
 def margin_corners(axis: CompletedAxis, steps: Sequence[float]) -> list[tuple[Corner, ShaftPlant]]:
     """Every plant whose margins differ: friction and bus do not count in the friction-free loop.
 
-    `steps` are the shares of load mass and stiffness tolerance that are taken; each payload of the cycle is one plant.
+    `steps` [1] are the shares of load mass and stiffness tolerance that are taken; each payload is one plant.
+    Source: [own]
     """
     tolerance = axis.stated.tolerance
     payloads = sorted({0.0, *(move.payload for move in axis.moves)} & {move.payload for move in axis.moves})

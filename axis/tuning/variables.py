@@ -94,6 +94,8 @@ def jerks(axis: CompletedAxis, jerk_time: float) -> tuple[float, ...]:
     """One jerk a move: full acceleration after `jerk_time` [s] where the jerk is open, else as stated.
 
     A move without a jerk limit takes a placeholder of its acceleration over the jerk time, which no law uses.
+    Returns [m/s³ or rad/s³]
+    Source: [own]
     """
     values = []
     for move in axis.moves:
@@ -105,7 +107,10 @@ def jerks(axis: CompletedAxis, jerk_time: float) -> tuple[float, ...]:
 
 
 def space(axis: CompletedAxis, start: Loops, lag: float) -> Space:
-    """The unknowns of an axis, their bounds scaled by inertia, lag [s], resonance and moves."""
+    """The unknowns of an axis, their bounds scaled by inertia, lag [s], resonance and moves.
+
+    Source: [own]
+    """
     plant = axis.plant(axis.heaviest_payload)
     empty = axis.plant()
     nyquist = math.pi / axis.drive.rates.velocity_period
