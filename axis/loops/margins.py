@@ -117,7 +117,7 @@ def unstable_by(loop: OpenLoop, factor: complex) -> float:
 
 
 def margin_violation(sampled: SampledPlant, loops: Loops, wishes: Tuning) -> float:
-    """0 where all wished margins hold; else a graded measure of how badly they fail (unstable: 4 and more).
+    """0 where all wished margins hold; else a graded measure of how badly they fail (unstable: 7 and more).
 
     Quick, for screening; `margins` has the last word. A peak M of the sensitivity excludes instability for every factor
     k with |1/k − 1| < 1/M, so that only factors which this leaves open are tried.
@@ -125,7 +125,7 @@ def margin_violation(sampled: SampledPlant, loops: Loops, wishes: Tuning) -> flo
     loop = open_loop(sampled, loops)
     nominal = unstable_by(loop, 1.0 + 0.0j)
     if nominal:
-        return 3.0 + nominal
+        return 6.0 + nominal
     matrix, inputs, outputs, direct = lifted_sensitivity(loop)
     to_hessenberg(matrix, inputs, outputs)
     angles = frequency_grid(loop, loops, sampled.velocity_period, SCREEN_ANGLES)
