@@ -32,6 +32,7 @@ from tests.guards.formulas import (
 DRAWS = 20
 ROOMS = ("mechanics", "motion", "machine", "sizing", "loops")
 PIECE_UNITS = ("s", "m or rad", "m/s or rad/s", "m/s² or rad/s²", "m/s³ or rad/s³")
+EXEMPT = {"loops.response.step_response"}  # each of its coefficients carries another power of the second
 SEQUENCES = (tuple, list, abc.Sequence, abc.Iterable)
 
 
@@ -66,7 +67,8 @@ def closed_formulas():
         kinds = {name: kind for name, kind in hints(function).items() if name != "return"}
         told = set(float_parameters(function)) <= set(parameter_units(function))
         room = full_name(function).split(".")[0]
-        if room in ROOMS and kinds and told and all(map(drawable, kinds.values())) and readable(function):
+        known = room in ROOMS and full_name(function) not in EXEMPT
+        if known and kinds and told and all(map(drawable, kinds.values())) and readable(function):
             yield function
 
 
