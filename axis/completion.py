@@ -224,7 +224,16 @@ class CompletedAxis:
 
 
 def at_corner(axis: CompletedAxis, corner: Mapping[str, float]) -> CompletedAxis:
-    """The axis with its tolerances at one corner (tolerance name → signed share); the drive's settings stay nominal."""
+    """The axis with its tolerances at one corner; the drive's settings stay nominal.
+
+    Parameters
+        axis: nominal
+        corner [1]: tolerance name to signed share; left out: 0
+    Returns the axis there
+    value·(1 + share); friction scales Coulomb, break-away and viscous together, torque_constant both constants; a
+    supply below nominal is the lowest bus that must be expected
+    Source: [own]
+    """
     share = {
         "load_mass": 0.0,
         "friction": 0.0,

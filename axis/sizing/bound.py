@@ -27,7 +27,15 @@ _ITERATIONS = 200  # enough to halve any bracket down to one float
 
 
 def bounds(axis: CompletedAxis, corner: Mapping[str, float]) -> tuple[float, float]:
-    """[s] Sum over the moves, at one corner, of the bound under the user's limits, and of the machine's own bound."""
+    """Sum over the moves, at one corner, of the bound under the user's limits and of the machine's own bound.
+
+    Parameters
+        axis: nominal
+        corner [1]: tolerance name to signed share
+    Returns [s], [s]
+    Σ `move_bound`
+    Source: [own]
+    """
     there = at_corner(axis, corner)
     own = sum(move_bound(there, move) for move in there.moves)
     return own, sum(move_bound(there, move, own_limits=False) for move in there.moves)

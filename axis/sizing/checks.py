@@ -43,7 +43,8 @@ def judge(rule: Rule, corners: Sequence[Corner]) -> Check:
     )
     if finding.holds:
         return check
-    return replace(check, remedy=remedy(rule, corner, finding, corners))
+    exceeding = {move for one in findings if not one.holds for move in one.moves}
+    return replace(check, remedy=remedy(rule, corner, replace(finding, moves=tuple(sorted(exceeding))), corners))
 
 
 def _reason(finding: Finding, corner: Corner) -> str:
@@ -54,10 +55,10 @@ def _reason(finding: Finding, corner: Corner) -> str:
         parts.append(f"in move {numbers}" if len(finding.moves) == 1 else f"in moves {numbers}")
     if finding.reason:
         parts.append(finding.reason)
-    parts.append(f"worst with {shares_in_words(corner.shares)}" if corner.shares else "worst at the nominal values")
+    parts.append(f"worst with {_shares_in_words(corner.shares)}" if corner.shares else "worst at the nominal values")
     return "; ".join(parts)
 
 
-def shares_in_words(shares: Mapping[str, float]) -> str:
+def _shares_in_words(shares: Mapping[str, float]) -> str:
     """A corner as a sentence names it: "load mass +5 %, friction −40 %"."""
     return ", ".join(f"{name.replace('_', ' ')} {share * 100.0:+.4g} %" for name, share in shares.items())

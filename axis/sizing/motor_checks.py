@@ -19,10 +19,16 @@ SQRT2 = math.sqrt(2.0)
 
 
 def largest_along(load: Load, share: Callable[[float, float], float]) -> tuple[float, float, float, tuple[int, ...]]:
-    """The largest share of a limit along the cycle: (share, speed [rad/s], torque [N·m], moves above one).
+    """The largest share of a limit along the cycle, where it stands, and the moves in which it exceeds one.
 
-    `share` of a speed and a torque grows with both where the motor drives, and is smaller where it brakes: the share
+    The share of a speed and a torque grows with both where the motor drives, and is smaller where it brakes: the share
     at a segment's two peaks bounds the segment, and only what that bound leaves open is looked at closely.
+
+    Parameters
+        load: the axis over its cycle
+        share [1]: of a speed [rad/s] and a torque [N·m]
+    Returns [1], [rad/s], [N·m], moves counted from 0
+    Source: [own]
     """
     course = load.trace
     bounds = [share(*peaks) for peaks in zip(load.peak_speeds.tolist(), load.peak_torques.tolist(), strict=True)]
@@ -142,7 +148,15 @@ def _inertia(corner: Corner) -> Finding:
 
 
 def peaks(corner: Corner, values: Array, limit: float) -> Finding:
-    """The largest of one value a segment beside one limit, and the moves that exceed it."""
+    """The largest of one value a segment beside one limit, and the moves that exceed it.
+
+    Parameters
+        corner: the axis at one corner
+        values: one a segment
+        limit [rad/s, N·m, N or A]: of all
+    Returns the finding
+    Source: [own]
+    """
     moves = tuple(sorted(set(corner.load.trace.move[values > limit].tolist())))
     return Finding(float(values.max()), limit, moves=moves)
 
@@ -151,12 +165,12 @@ def at_least(what: str, digits: int = 3) -> Callable[[Finding], str]:
     """Remedy by another part: `what` with the demand, rounded up, in place of the braces."""
 
     def text(finding: Finding) -> str:
-        return what.format(rounded_up(finding.demand, digits)) if finding.demand is not None else ""
+        return what.format(_rounded_up(finding.demand, digits)) if finding.demand is not None else ""
 
     return text
 
 
-def rounded_up(value: float, digits: int) -> str:
+def _rounded_up(value: float, digits: int) -> str:
     """The value with so many significant digits, never below it."""
     if value <= 0.0:
         return "0"
@@ -166,7 +180,7 @@ def rounded_up(value: float, digits: int) -> str:
 
 def _torque_part(finding: Finding) -> str:
     assert finding.demand is not None
-    return f"a motor and drive that give at least {rounded_up(finding.demand, 3)} N·m {finding.reason}"
+    return f"a motor and drive that give at least {_rounded_up(finding.demand, 3)} N·m {finding.reason}"
 
 
 MOTOR_RULES = (
