@@ -56,7 +56,15 @@ def spectral_radius(loop: OpenLoop, factor: complex = 1.0) -> float:
 
 
 def first_instability(radius: Callable[[float], float], limit: float, step: float) -> float:
-    """The smallest positive argument at which a spectral radius passes 1, infinite where none does up to `limit`."""
+    """The smallest positive argument at which a spectral radius passes 1, infinite where none does.
+
+    Parameters
+        radius: spectral radius at an argument
+        limit [1]: of the arguments tried
+        step [1]: between the arguments tried; inside the first bad one the root is refined
+    Returns [1], in the unit of the argument
+    Source: [own]; stops being true where stability is lost and found again within one step
+    """
     for i in range(1, math.ceil(limit / step) + 1):
         if radius(i * step) >= 1.0:
             return float(brentq(lambda x: radius(x) - 1.0, (i - 1) * step, i * step, xtol=1e-12, rtol=1e-14))
@@ -64,9 +72,18 @@ def first_instability(radius: Callable[[float], float], limit: float, step: floa
 
 
 def frequency_grid(loop: OpenLoop, loops: Loops, period: float, count: int) -> Real:
-    """Angles per position period [rad], from well below everything that the settings can make happen to half the rate.
+    """Angles per position period, even in the logarithm.
 
-    Even in the logarithm; what a resonance above half the rate does is folded down to where the grid is denser.
+    They begin well below everything that the settings can make happen and end at half the position rate; what a
+    resonance above it does is folded down to where the grid is denser.
+
+    Parameters
+        loop: the loop
+        loops: its settings
+        period [s]: velocity period
+        count: of the angles
+    Returns [rad]
+    Source: [own]
     """
     slowest = min(0.1 * min(loops.position.kv, 1.0 / loops.velocity.ti) * period * loop.every, 0.1)
     return np.exp(np.linspace(math.log(slowest), math.log(math.pi), count))

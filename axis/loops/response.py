@@ -27,15 +27,18 @@ TERMS = 12  # of the Taylor series: 0.05^12/12! is far below rounding
 
 @dataclass(frozen=True)
 class StepResponse:
-    """Error of a unit step response in units of its final value, between its extrema."""
+    """Error of a unit step response in units of its final value, between its extrema.
 
-    companion: Real  # [1/s] and powers: state matrix of (e, ė, ë, …)
-    interval: float  # [s] of the grid
+    Times are in the unit that the coefficients of the transfer function imply: seconds where they are in seconds.
+    """
+
+    companion: Real  # state matrix of (e, ė, ë, …)
+    interval: float  # [1] of the grid
     states: Real  # grid × order
-    turns: tuple[float, ...]  # [s] start, all extrema, end of the grid
+    turns: tuple[float, ...]  # [1] start, all extrema, end of the grid
 
     def error(self, time: float, derivative: int = 0) -> float:
-        """e(t) [1], or its derivative, at `time` [s]."""
+        """e [1] at `time` [1], or a derivative of it."""
         place = min(int(time / self.interval), len(self.states) - 1)
         tau = time - place * self.interval
         term = self.states[place]
@@ -46,7 +49,7 @@ class StepResponse:
         return total
 
     def crossings(self, level: float) -> list[float]:
-        """All times [s] at which the error passes a level [1], in order; between extrema it is monotone."""
+        """All times [1] at which the error passes a `level` [1], in order; between extrema it is monotone."""
         values = [self.error(t) - level for t in self.turns]
         return [
             float(brentq(lambda t: self.error(t) - level, a, b, xtol=1e-14 * b, rtol=1e-14))
@@ -66,11 +69,11 @@ class StepResponse:
         return max((self.error(t) for t in self.turns if t > reached), default=0.0)
 
     def rise_time(self, share: float) -> float:
-        """Time [s] at which a share [1] of the final value is first reached; infinite where it never is."""
+        """Time [1] at which a `share` [1] of the final value is first reached; infinite where it never is."""
         return next(iter(self.crossings(1.0 - share)), math.inf)
 
     def settling_time(self, band: float) -> float:
-        """Time [s] from which on the response stays within ± band [1] of its final value."""
+        """Time [1] from which on the response stays within ± `band` [1] of its final value."""
         return max(self.crossings(band) + self.crossings(-band), default=0.0)
 
 
