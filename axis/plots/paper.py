@@ -54,8 +54,9 @@ def to_svg(figure: Figure, width: float = 88.0, height: float = 60.0) -> bytes:
 
 
 def _names(figure: Figure) -> int:
-    """Entries of the legend."""
-    return len(figure.bands) + len(figure.lines) + len(figure.markers)
+    """Entries of the legend; a single trace is named by its axis."""
+    entries = len(figure.bands) + len(figure.lines) + len(figure.markers)
+    return entries if entries > 1 else 0
 
 
 def _legend(canvas: Any, axes: Axes, left: float) -> None:
@@ -98,10 +99,10 @@ def _draw(axes: Axes, figure: Figure) -> None:
             level.name,
             (1.0, level.y),
             xycoords=("axes fraction", "data"),
-            xytext=(-2.0, 1.5 if level.y >= 0.0 else -1.5),
+            xytext=(-2.0, -1.5),
             textcoords="offset points",
             ha="right",
-            va="bottom" if level.y >= 0.0 else "top",
+            va="top",
             color=colour[level.meaning],
             parse_math=False,
         )

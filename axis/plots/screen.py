@@ -86,7 +86,7 @@ def _strips(drawn: go.Figure, figure: Figure, palette: Palette) -> None:
             xref="paper",
             xanchor="right",
             y=level.y,
-            yanchor="bottom" if level.y >= 0.0 else "top",
+            yanchor="top",
             showarrow=False,
             font={"color": colour, "size": 12},
         )

@@ -11,10 +11,12 @@ from typing import Any
 from axis.cautions import cautions
 from axis.plots.figure import Figure
 from axis.plots.paper import to_svg
+from axis.plots.profile import profiles
 from axis.plots.tail import tails
 from axis.sheet.rows import (
     PRELIMINARY,
     CheckRow,
+    MoveRows,
     check_rows,
     comparison_rows,
     demand_rows,
@@ -31,6 +33,7 @@ from axis.study import Study
 
 TEMPLATE = Path(__file__).with_name("sheet.typ")
 FIGURE_WIDTH, FIGURE_HEIGHT = 92.0, 54.0  # [mm]
+PROFILE_WIDTH, PROFILE_HEIGHT = 58.0, 25.0  # [mm]
 _LONG_WORD = re.compile(r"\S{33,}")
 _PIECE = re.compile(r"(\S{16})(?=\S)")
 
@@ -72,6 +75,10 @@ def sheet_data(study: Study, figures: Sequence[Figure], date: str | None) -> dic
         "footer": PRELIMINARY,
         "groups": [{"title": group.title, "rows": [_value(row) for row in group.rows]} for group in understood(study)],
         "sized": study.sizing is not None,
+        "profiles": [
+            {"words": one.words, "picture": to_svg(one, PROFILE_WIDTH, PROFILE_HEIGHT).decode()}
+            for one in profiles(study.axis)
+        ],
         "demand": [list(row) for row in demand_rows(study)],
         "checks": [_check(row) for row in check_rows(sized, rotary)],
         "whole": [_check(row) for row in check_rows(whole, rotary)],
@@ -83,7 +90,8 @@ def sheet_data(study: Study, figures: Sequence[Figure], date: str | None) -> dic
         "cautions": [{"text": one.text, "governs": one.governs} for one in cautions(study.document.axis)],
         "limits": list(limit_sentences(study)),
     }
-    return {key: _breakable(value) for key, value in data.items()} | {"moves": _moves(study, figures)}
+    drawn = ("profiles",)
+    return {k: v if k in drawn else _breakable(v) for k, v in data.items()} | {"moves": _moves(study, figures)}
 
 
 def _moves(study: Study, figures: Sequence[Figure]) -> list[dict[str, Any]]:
@@ -97,7 +105,7 @@ def _moves(study: Study, figures: Sequence[Figure]) -> list[dict[str, Any]]:
             "sentence": move.sentence,
             "corner": move.worst_corner,
             "figures": [[row.name, row.nominal, row.worst] for row in move.figures],
-            "checks": [_check(row, f", move {move.number}") for row in move.checks],
+            "checks": [_move_check(row, move) for row in move.checks],
             "words": figure.words,
         }
         moves.append(_breakable(told) | {"picture": to_svg(figure, FIGURE_WIDTH, FIGURE_HEIGHT).decode()})
@@ -108,8 +116,16 @@ def _value(row: ValueRow) -> dict[str, Any]:
     return {"name": row.name, "echo": row.echo, "value": row.value, "origin": row.origin, "note": row.note}
 
 
-def _check(row: CheckRow, ending: str = "") -> dict[str, Any]:
-    return vars(row) | {"word": WORDS[row.verdict], "name": row.name.removesuffix(ending)}
+def _check(row: CheckRow) -> dict[str, Any]:
+    return vars(row) | {"word": WORDS[row.verdict]}
+
+
+def _move_check(row: CheckRow, move: MoveRows) -> dict[str, Any]:
+    """A check below its move and beside the move's worst corner, neither of which it says again."""
+    return _check(row) | {
+        "name": row.name.removesuffix(f", move {move.number}"),
+        "reason": row.reason.replace(move.worst_corner, "at that corner"),
+    }
 
 
 def _breakable(value: Any) -> Any:

@@ -287,8 +287,7 @@ def limit_sentences(study: Study) -> tuple[str, ...]:
             )
     open_ = [check for check in _all_checks(study) if check.verdict == "not evaluated"]
     if open_:
-        named = "; ".join(f"{check.name} ({check.reason})" if check.reason else check.name for check in open_)
-        sentences.append(f"Not evaluated: {named}.")
+        sentences.append(f"Not evaluated, for want of data: {'; '.join(check.name for check in open_)}.")
     sentences += [f"{warning}." for warning in study.axis.warnings]
     if study.tuned is not None and study.tuned.reason:
         sentences.append(f"The search found no settings that hold everything: {study.tuned.reason}.")
