@@ -90,6 +90,9 @@ def test_cycle_times_and_closing(move):
     assert cycle.duration == pytest.approx(move.duration + back.duration + 0.35)
     assert cycle.profile.duration == pytest.approx(cycle.duration)
     assert float(cycle.profile.evaluate(move.duration + 0.1)[0]) == pytest.approx(0.3, rel=1e-14)
+    middle = 0.5 * (cycle.starts[1] + cycle.commanded_ends[1])  # of a symmetric move: half way back
+    assert float(cycle.profile.evaluate(middle)[0]) == pytest.approx(0.15, rel=1e-13)
+    assert cycle.profile.end == pytest.approx(0.0, abs=1e-15)
     assert cycle.profile.mean_speed == pytest.approx(0.6 / cycle.duration, rel=1e-13)
     squared = move.squared_acceleration + back.squared_acceleration
     assert cycle.profile.squared_acceleration == pytest.approx(squared, rel=1e-13)
