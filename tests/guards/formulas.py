@@ -41,6 +41,11 @@ def public_functions():
                 yield function
 
 
+def is_plain(function):
+    """Whether a function is plain Python where it stands; parts of the kernel must not be called from Python."""
+    return vars(importlib.import_module(function.__module__))[function.__name__] is function
+
+
 def hints(function):
     """Annotations of a function as types."""
     return typing.get_type_hints(function, vars(importlib.import_module(function.__module__)))
