@@ -5,6 +5,7 @@ from __future__ import annotations
 import io
 import math
 import threading
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from axis.plots.figure import Figure, Shape, Stroke
@@ -27,6 +28,13 @@ _SETTINGS: Any = {
     "font.size": TEXT,
 }
 _SETTINGS_LOCK = threading.Lock()
+
+
+def font_folder() -> Path:
+    """Where the fonts of the figures lie, for what prints them."""
+    import matplotlib
+
+    return Path(matplotlib.get_data_path()) / "fonts" / "ttf"
 
 
 def to_svg(figure: Figure, width: float = 88.0, height: float = 60.0) -> bytes:

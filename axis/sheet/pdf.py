@@ -10,7 +10,7 @@ from typing import Any
 
 from axis.cautions import cautions
 from axis.plots.figure import Figure
-from axis.plots.paper import to_svg
+from axis.plots.paper import font_folder, to_svg
 from axis.plots.profile import profiles
 from axis.plots.tail import tails
 from axis.sheet.rows import (
@@ -45,15 +45,13 @@ def pdf(study: Study, date: str | None = None) -> bytes:
 
 def typeset(study: Study, figures: Sequence[Figure], date: str | None = None) -> bytes:
     """The sheet with the tails of its moves already drawn up."""
-    import matplotlib
     import typst
 
-    fonts = Path(matplotlib.get_data_path()) / "fonts" / "ttf"
     return typst.compile(
         TEMPLATE,
         format="pdf",
         sys_inputs={"sheet": json.dumps(sheet_data(study, figures, date), allow_nan=False)},
-        font_paths=[fonts],
+        font_paths=[font_folder()],
         ignore_system_fonts=True,
         timestamp=0,
     )
