@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Mapping, Sequence
 from concurrent.futures import Executor
@@ -39,7 +40,7 @@ Corner = Mapping[str, float]
 
 UNSTABLE_SCORE = 1e9  # margins missed; no simulation was spent
 VIOLATION_SCORE = 1e4  # a condition of the verdict missed
-MAX_CYCLES = 1
+CYCLES = 1  # the search looks at the first cycle; verification repeats it until it repeats itself
 
 
 @dataclass(frozen=True)
@@ -56,7 +57,9 @@ class Conditions:
 class Objective:
     """Scores of candidates on a growing set of corners; smaller is better."""
 
-    def __init__(self, axis: CompletedAxis, start: Loops, corners: Sequence[Corner]) -> None:
+    def __init__(
+        self, axis: CompletedAxis, start: Loops, corners: Sequence[Corner], plants: Sequence[ShaftPlant]
+    ) -> None:
         self.axis = axis
         self.runs = 0
         stated = axis.stated
@@ -77,7 +80,7 @@ class Objective:
         self._plants = np.zeros((0, len(axis.moves), PLANT_SIZE))
         self._limits = np.zeros((0, LIMITS_SIZE))
         self.corners: list[Corner] = []
-        self.margin_plants = [self.sampled(plant) for plant in extreme_plants(axis)]
+        self.margin_plants = [self.sampled(plant) for plant in plants]
         self.add(corners)
 
     def add(self, corners: Sequence[Corner]) -> None:
@@ -94,17 +97,19 @@ class Objective:
         """One plant as the margins see it."""
         return sample_plant(plant, self.axis.drive.rates, self._current, self.axis.motor.torque_constant)
 
-    def margins(self, loops: Loops) -> float:
-        """Largest violation of the margins over the extreme plants; 0 where all hold."""
+    def margins(self, loops: Loops, first_is_enough: bool = False) -> float:
+        """Largest violation of the margins over the plants, 0 where all hold; or the first that is found."""
         wishes = self.axis.stated.tuning
         worst = 0.0
         for plant in self.margin_plants:
             worst = max(worst, margin_violation(plant, loops, wishes))
+            if first_is_enough and worst > 0.0:
+                break
         return worst
 
     def score(self, loops: Loops, beat: float = math.inf) -> tuple[float, int]:
         """Score of one candidate and the runs it cost; stops early once it is worse than `beat`."""
-        violation = self.margins(loops)
+        violation = self.margins(loops, first_is_enough=beat < UNSTABLE_SCORE)
         if violation > 0.0:
             return UNSTABLE_SCORE * (1.0 + violation), 0
         score, done = 0.0, 0
@@ -128,12 +133,6 @@ class Objective:
         results = executor.map(lambda part: self._figures(loops, *part), parts)
         return [corner_score(at, durations, self.conditions) for found, durations in results for at in found]
 
-    def worst_corners(self, loops: Loops, count: int, known: Sequence[Corner], executor: Executor) -> list[Corner]:
-        """The corners with the largest scores that are not known yet."""
-        scores = self.at_corners(loops, executor)
-        order = sorted(range(len(scores)), key=lambda n: -scores[n])
-        return [self.corners[n] for n in order if self.corners[n] not in known][:count]
-
     def largest_following_error(self, loops: Loops) -> float:
         """[m] Largest following error on the corners, infinite where the loop diverges."""
         figures, _ = self._figures(loops, 0, len(self.corners))
@@ -147,7 +146,7 @@ class Objective:
         cycles = np.zeros(last - first, dtype=np.int64)
         simulate_corners(
             self._plants[first:last], self._limits[first:last], self._frame, gains,
-            cycle.pieces, cycle.first_piece, cycle.moves, MAX_CYCLES, figures, cycles,
+            cycle.pieces, cycle.first_piece, cycle.moves, CYCLES, figures, cycles,
         )  # fmt: skip
         return figures, cycle.moves[:, DURATION]
 
@@ -191,25 +190,33 @@ def move_violation(at: Array, duration: float, wanted: Conditions) -> float:
 
 
 def extreme_plants(axis: CompletedAxis) -> list[ShaftPlant]:
-    """The plants at which margins are asked first: nominal, and the ends of inertia, stiffness and torque constant."""
-    return [plant for _, plant in margin_corners(axis, (-1.0, 1.0))]
+    """Nominal, and the ends of inertia, stiffness and torque constant: light and empty, heavy and fully laden."""
+    light, heavy = min(move.payload for move in axis.moves), axis.heaviest_payload
+    found = [axis.plant(heavy)]
+    for corner in _margin_shares(axis, (-1.0, 1.0)):
+        share = corner.get("load_mass", 0.0)
+        for payload in {light, heavy} if share == 0.0 else {heavy if share > 0.0 else light}:
+            found.append(at_corner(axis, corner).plant(payload * (1.0 + share)))
+    return found
 
 
 def margin_corners(axis: CompletedAxis, steps: Sequence[float]) -> list[tuple[Corner, ShaftPlant]]:
-    """Every plant whose margins differ: friction and bus do not count in the friction-free loop.
+    """Every plant whose margins differ: friction and bus do not count in the friction-free loop, each payload does."""
+    payloads = sorted({move.payload for move in axis.moves})
+    return [
+        (corner, at_corner(axis, corner).plant(payload * (1.0 + corner.get("load_mass", 0.0))))
+        for corner in ({}, *_margin_shares(axis, steps))
+        for payload in payloads
+    ]
 
-    `steps` [1] are the shares of load mass and stiffness tolerance that are taken; each payload is one plant.
-    Source: [own]
-    """
+
+def _margin_shares(axis: CompletedAxis, steps: Sequence[float]) -> list[dict[str, float]]:
+    """Combinations of the tolerances that move the margins; load mass and stiffness take the given steps."""
     tolerance = axis.stated.tolerance
-    payloads = sorted({0.0, *(move.payload for move in axis.moves)} & {move.payload for move in axis.moves})
-    found: list[tuple[Corner, ShaftPlant]] = [({}, axis.plant(payload)) for payload in payloads]
     names = [name for name in ("load_mass", "stiffness", "torque_constant") if getattr(tolerance, name) > 0.0]
     grids = [(-1.0, 1.0) if name == "torque_constant" else steps for name in names]
-    shares = np.array(np.meshgrid(*grids, indexing="ij")).reshape(len(names), -1).T if names else np.zeros((0, 0))
-    for row in shares:
-        corner = {name: float(step) * float(getattr(tolerance, name)) for name, step in zip(names, row, strict=True)}
-        there = at_corner(axis, corner)
-        heavy = 1.0 + corner.get("load_mass", 0.0)
-        found += [(corner, there.plant(payload * heavy)) for payload in payloads]
-    return found
+    return [
+        {name: step * float(getattr(tolerance, name)) for name, step in zip(names, row, strict=True)}
+        for row in itertools.product(*grids)
+        if names
+    ]

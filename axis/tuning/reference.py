@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from concurrent.futures import Executor
 
 from axis.completion import CompletedAxis
@@ -44,7 +44,7 @@ def margins_everywhere(axis: CompletedAxis, loops: Loops) -> bool:
 
 
 def _sampled(
-    axis: CompletedAxis, loops: Loops, steps: tuple[float, ...]
+    axis: CompletedAxis, loops: Loops, steps: Sequence[float]
 ) -> list[tuple[Mapping[str, float], SampledPlant]]:
     rates, constant = axis.drive.rates, axis.motor.torque_constant
     return [
