@@ -18,11 +18,11 @@ from axis.simulation.plant import (
     LOAD_SPEED,
     MOTOR_DRAG,
     MOTOR_SPEED,
+    PADDED,
     PULL,
     RIGID,
     SLIDING,
     SPRING,
-    STATE_SIZE,
     TWIST,
 )
 from axis.simulation.series import series_step
@@ -104,15 +104,15 @@ def advance(
     mode = (2 if drag > 0.0 and motor_sense == 0 else 0) + (1 if holding > 0.0 and load_sense == 0 else 0)
     on_motor = drag * motor_sense
     on_load = p[SLIDING] * load_sense + p[PULL]
-    for row in range(STATE_SIZE):
+    for row in range(PADDED):
         new[row] = (
-            matrices[segment, mode, row, 0] * speed
-            + matrices[segment, mode, row, 1] * twist
-            + matrices[segment, mode, row, 2] * load
-            + matrices[segment, mode, row, 3] * current
-            + matrices[segment, mode, row, 4] * voltage
-            + matrices[segment, mode, row, 5] * on_motor
-            + matrices[segment, mode, row, 6] * on_load
+            matrices[segment, mode, 0, row] * speed
+            + matrices[segment, mode, 1, row] * twist
+            + matrices[segment, mode, 2, row] * load
+            + matrices[segment, mode, 3, row] * current
+            + matrices[segment, mode, 4, row] * voltage
+            + matrices[segment, mode, 5, row] * on_motor
+            + matrices[segment, mode, 6, row] * on_load
         )
     new_speed, new_twist, new_load, new_current = new[MOTOR_SPEED], new[TWIST], new[LOAD_SPEED], new[CURRENT]
     if holding > 0.0:

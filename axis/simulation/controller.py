@@ -8,6 +8,7 @@ import numpy as np
 import numpy.typing as npt
 
 from axis.compiled import compiled_part
+from axis.machine.drive import bucket_step
 from axis.simulation.layout import (
     BUCKET_CAPACITY,
     CONTINUOUS_CURRENT,
@@ -52,6 +53,8 @@ Array = npt.NDArray[np.float64]
 ) = range(14)
 DRIVE_SIZE = MEMORY + 2 * MAX_FILTERS
 
+fill = compiled_part(bucket_step)
+
 EMPTIED = 0.9  # of the bucket's capacity: below it the peak current is allowed again
 
 
@@ -67,21 +70,6 @@ def measured(angle: float, count: float) -> float:
     Source: [own]
     """
     return count * math.floor(angle / count + 0.5) if count > 0.0 else angle
-
-
-@compiled_part
-def bucket_level(level: float, current: float, continuous: float, period: float) -> float:
-    """The current-time bucket after one more sample: it fills above the continuous current and empties below it.
-
-    Parameters
-        level [A^2·s]: before
-        current [A]: peak phase current of this sample
-        continuous [A]: that the drive allows without end
-        period [s]: of the samples
-    Returns [A^2·s]
-    Source: [own]
-    """
-    return max(0.0, level + (current * current - continuous * continuous) * period)
 
 
 @compiled_part
@@ -134,10 +122,11 @@ def current_sample(u: Array, gains: Array, limits: Array, p: Array, speed: float
     u[VOLTAGE_INTEGRAL] += increment
     wanted = gains[CURRENT_GAIN] * error + u[VOLTAGE_INTEGRAL]
     across = p[CROSS_VOLTAGE] * speed * current
-    limit = math.sqrt(max(limits[VOLTAGE_LIMIT] * limits[VOLTAGE_LIMIT] - across * across, 0.0))
-    u[VOLTAGE] = min(max(wanted, -limit), limit)
-    if abs(wanted) <= limit:
+    room = limits[VOLTAGE_LIMIT] * limits[VOLTAGE_LIMIT] - across * across
+    u[VOLTAGE] = wanted
+    if wanted * wanted <= room:
         return False
+    u[VOLTAGE] = math.copysign(math.sqrt(max(room, 0.0)), wanted)
     if increment * wanted > 0.0:
         u[VOLTAGE_INTEGRAL] -= increment
     return True
@@ -147,7 +136,7 @@ def current_sample(u: Array, gains: Array, limits: Array, p: Array, speed: float
 def fill_bucket(u: Array, limits: Array, current: float, period: float) -> None:
     """Count the current-time bucket; once full it allows the continuous current until a tenth has drained."""
     capacity = limits[BUCKET_CAPACITY]
-    u[BUCKET] = bucket_level(u[BUCKET], current, limits[CONTINUOUS_CURRENT], period)
+    u[BUCKET] = fill(u[BUCKET], current, limits[CONTINUOUS_CURRENT], period)
     if u[BUCKET] >= capacity:
         u[FULL], u[TRIP] = 1.0, 1.0
     elif u[BUCKET] <= EMPTIED * capacity:

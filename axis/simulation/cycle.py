@@ -80,6 +80,7 @@ from axis.simulation.plant import (
     MODES,
     MOTOR_DRAG,
     MOTOR_SPEED,
+    PADDED,
     PREPARED_SIZE,
     PULL,
     RIGID,
@@ -210,7 +211,7 @@ def run_move(
     o[AIM], o[BAND], o[SENSE] = target, frame[WINDOW], move[DIRECTION]
     u[TRIP] = 0.0
     o[INSIDE] = -1.0
-    difference = 0.0
+    difference, fullest, peak_current, peak_speed, square = 0.0, 0.0, 0.0, 0.0, 0.0
     low, high = math.inf, -math.inf
     k = 0
     tracing = trace.shape[0] > 0
@@ -238,10 +239,10 @@ def run_move(
                 if current_sample(u, gains, limits, p, x[MOTOR_SPEED], current):
                     figures[VOLTAGE_SATURATED] += period
                 fill_bucket(u, limits, current, period)
-                figures[BUCKET_PEAK] = max(figures[BUCKET_PEAK], u[BUCKET])
-                figures[PEAK_CURRENT_SEEN] = max(figures[PEAK_CURRENT_SEEN], abs(current))
-                figures[PEAK_SPEED] = max(figures[PEAK_SPEED], abs(x[MOTOR_SPEED]))
-                figures[CURRENT_SQUARE] += current * current * period
+                fullest = max(fullest, u[BUCKET])
+                peak_current = max(peak_current, abs(current))
+                peak_speed = max(peak_speed, abs(x[MOTOR_SPEED]))
+                square += current * current
                 if time >= quiet:
                     low, high = min(low, current), max(high, current)
                 if tracing:
@@ -253,6 +254,10 @@ def run_move(
                         since = time if segment == 0 else time + wait
                         advance(x, senses, p, matrices, segment, voltage, length, o, since, rest_offset, c, new)
                 k += 1
+    figures[BUCKET_PEAK] = fullest
+    figures[PEAK_CURRENT_SEEN] = peak_current
+    figures[PEAK_SPEED] = peak_speed
+    figures[CURRENT_SQUARE] = square * period
     figures[TRIPPED] = u[TRIP]
     figures[CURRENT_RIPPLE] = max(high - low, 0.0)
     conclude(figures, o, x[ANGLE] - x[TWIST] + rest_offset, p[K_TORQUE])
@@ -313,7 +318,7 @@ def simulate(
     """
     count = moves.shape[0]
     prepared = np.zeros((count, PREPARED_SIZE))
-    matrices = np.zeros((count, SEGMENTS, MODES, STATE_SIZE, COLUMNS))
+    matrices = np.zeros((count, SEGMENTS, MODES, COLUMNS, PADDED))
     total = 0
     for m in range(count):
         total += int(moves[m, PERIODS])
@@ -330,7 +335,7 @@ def simulate(
     senses = np.zeros(2, dtype=np.int64)
     o = np.zeros(OBSERVER_SIZE)
     c = np.zeros((SERIES_ROWS, TERMS + 1))
-    new = np.zeros(STATE_SIZE)
+    new = np.zeros(PADDED)
     record = np.zeros(total)
     kept = np.zeros((KEPT, count, FIGURES_SIZE))
     p = prepared[count - 1]

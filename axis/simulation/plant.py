@@ -60,6 +60,7 @@ ANGLE, MOTOR_SPEED, TWIST, LOAD_SPEED, CURRENT, STATE_SIZE = range(6)
 
 SEGMENTS = 2  # before and after the new voltage acts
 MODES = 4  # 2·(motor rests) + (load rests)
+PADDED = 8  # rows of a transition, a whole number of vector registers
 COLUMNS = 7  # motor speed, twist, load speed, current; voltage, motor friction, load friction with load torque
 FADED = 6.1  # exp(−6.1²) is below half a unit in the last place of one
 
@@ -142,12 +143,12 @@ def transitions(p: Array, first_time: float, second_time: float, result: Array) 
             out = result[segment, mode]
             for row in range(ORDER):
                 for column in range(ORDER):
-                    out[row + 1, column] = once[row, column]
-                out[row + 1, 4] = first[row, 3] / p[HENRYS]
-                out[row + 1, 5] = first[row, 0] * per_motor
-                out[row + 1, 6] = (first[row, 2] + p[RIGID] * first[row, 0]) * per_load
+                    out[column, row + 1] = once[row, column]
+                out[4, row + 1] = first[row, 3] / p[HENRYS]
+                out[5, row + 1] = first[row, 0] * per_motor
+                out[6, row + 1] = (first[row, 2] + p[RIGID] * first[row, 0]) * per_load
             for column in range(ORDER):
-                out[0, column] = first[0, column]
-            out[0, 4] = second[0, 3] / p[HENRYS]
-            out[0, 5] = second[0, 0] * per_motor
-            out[0, 6] = (second[0, 2] + p[RIGID] * second[0, 0]) * per_load
+                out[column, 0] = first[0, column]
+            out[4, 0] = second[0, 3] / p[HENRYS]
+            out[5, 0] = second[0, 0] * per_motor
+            out[6, 0] = (second[0, 2] + p[RIGID] * second[0, 0]) * per_load

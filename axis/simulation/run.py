@@ -45,7 +45,7 @@ from axis.simulation.scenario import (
     Array,
     Cycle,
     Scenario,
-    bucket_capacity,
+    capacity,
     cycle_arrays,
     frame_vector,
     gains_vector,
@@ -113,9 +113,9 @@ def _simulated(scenario: Scenario, max_cycles: int, rows: Array) -> tuple[Outcom
         rows,
         rise,
     )
-    capacity = bucket_capacity(scenario.limits)
+    holds = capacity(scenario.limits)
     moves = tuple(
-        move_outcome(figures[n], cycle.moves[n], scenario.rates.position_period, scenario.ratio, capacity)
+        move_outcome(figures[n], cycle.moves[n], scenario.rates.position_period, scenario.ratio, holds)
         for n in range(len(scenario.moves))
     )
     outcome = Outcome(
@@ -123,12 +123,12 @@ def _simulated(scenario: Scenario, max_cycles: int, rows: Array) -> tuple[Outcom
         cycles=abs(cycles),
         repeated=cycles > 0,
         diverged=cycles == 0,
-        bucket_rise=float(rise[0]) / capacity,
+        bucket_rise=float(rise[0]) / holds,
     )
     return outcome, cycle
 
 
-def move_outcome(figures: Array, move: Array, position_period: float, ratio: float, capacity: float) -> MoveOutcome:
+def move_outcome(figures: Array, move: Array, position_period: float, ratio: float, bucket: float) -> MoveOutcome:
     """One row of figures as the record of a move.
 
     Parameters
@@ -136,7 +136,7 @@ def move_outcome(figures: Array, move: Array, position_period: float, ratio: flo
         move: its row of the cycle
         position_period [s]: of the drive
         ratio [rad/m]: motor radians per load unit
-        capacity [A^2·s]: of the current-time bucket
+        bucket [A²·s]: what the current-time bucket holds
     Returns the record in load units
     Source: [own]
     """
@@ -159,7 +159,7 @@ def move_outcome(figures: Array, move: Array, position_period: float, ratio: flo
         peak_speed=float(figures[PEAK_SPEED]),
         current_saturated=float(figures[CURRENT_SATURATED]),
         voltage_saturated=float(figures[VOLTAGE_SATURATED]),
-        bucket_peak=float(figures[BUCKET_PEAK]) / capacity,
+        bucket_peak=float(figures[BUCKET_PEAK]) / bucket,
         tripped=bool(figures[TRIPPED] > 0.0),
         current_square_time=float(figures[CURRENT_SQUARE]),
         current_ripple=float(figures[CURRENT_RIPPLE]),

@@ -12,6 +12,8 @@ import numpy.typing as npt
 from axis.completion import Limits, Rates, ShaftPlant
 from axis.description.settings import Loops
 from axis.loops.filters import lowpass_share, torque_filter
+from axis.machine.drive import bucket_capacity
+from axis.motion.pieces import evaluate_piece
 from axis.simulation.layout import FILTERS, GAINS_SIZE, MAX_FILTERS, MOVE_SIZE
 
 Array = npt.NDArray[np.float64]
@@ -36,7 +38,7 @@ class CommandedMove:
     def distance(self) -> float:
         """[m] where the last piece ends."""
         t, p, v, a, j = (float(number) for number in self.pieces[-1])
-        return p + t * (v + t * (a / 2.0 + t * j / 6.0))
+        return evaluate_piece(t, p, v, a, j)[0]
 
 
 @dataclass(frozen=True)
@@ -74,26 +76,16 @@ def plants_matrix(plants: Sequence[ShaftPlant]) -> Array:
     return np.array([astuple(plant) for plant in plants], dtype=np.float64)
 
 
-def bucket_capacity(limits: Limits) -> float:
-    """What the drive's current-time bucket holds; infinite where its peak current is not above the continuous one.
-
-    Parameters
-        limits: of the drive
-    Returns [A²·s]
-    capacity = (I_peak² − I_cont²)·t_peak
-    Source: [own]
-    """
-    peak, continuous = limits.drive_peak_current, limits.continuous_current
-    if not peak > continuous or math.isinf(continuous):
-        return math.inf
-    return (peak**2 - continuous**2) * limits.peak_time
+def capacity(limits: Limits) -> float:
+    """[A²·s] What the drive's current-time bucket holds."""
+    return bucket_capacity(limits.continuous_current, limits.drive_peak_current, limits.peak_time)
 
 
 def limits_vector(limits: Limits) -> Array:
     """The limits as the kernel reads them."""
     count = 0.0 if math.isinf(limits.encoder_counts) else 2.0 * math.pi / limits.encoder_counts
     return np.array(
-        [limits.continuous_current, limits.peak_current, bucket_capacity(limits), limits.voltage, count],
+        [limits.continuous_current, limits.peak_current, capacity(limits), limits.voltage, count],
         dtype=np.float64,
     )
 
