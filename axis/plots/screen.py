@@ -10,7 +10,8 @@ from axis.plots.palette import DARK, LIGHT, Palette
 if TYPE_CHECKING:
     import plotly.graph_objects as go
 
-HEIGHT = 330  # pixels of the drawn part
+HEIGHT = 270  # pixels of the drawn part
+ABOVE, BELOW = 12, 95  # pixels round it: beside the rows of words, and for the axis and the legend
 ROW = 19  # pixels that one row of words above the figure takes
 
 _DASHES: dict[Stroke, str] = {"solid": "solid", "dashed": "dash", "dotted": "dot"}
@@ -48,8 +49,8 @@ def to_plotly(figure: Figure, dark: bool = False) -> go.Figure:
     _marks(drawn, figure, palette)
     ruling = {"gridcolor": palette.grid, "zerolinecolor": palette.grid, "linecolor": palette.text, "ticks": "outside"}
     drawn.update_layout(
-        height=HEIGHT + ROW * figure.rows,
-        margin={"l": 70, "r": 20, "t": ROW * figure.rows + 12, "b": 50},
+        height=HEIGHT + ROW * figure.rows + ABOVE + BELOW,
+        margin={"l": 70, "r": 20, "t": ROW * figure.rows + ABOVE, "b": BELOW},
         paper_bgcolor=palette.ground,
         plot_bgcolor=palette.ground,
         font={"color": palette.text, "size": 13},
@@ -103,7 +104,7 @@ def _marks(drawn: go.Figure, figure: Figure, palette: Palette) -> None:
             x1=mark.x,
             xref="x",
             y0=0.0,
-            y1=1.0 + ROW * (mark.row + 1) / HEIGHT * 1.25,
+            y1=1.0 + ROW * (mark.row + 1) / HEIGHT,
             yref="paper",
             line={"color": colour, "width": 1.5, "dash": _DASHES[mark.stroke]},
         )

@@ -21,6 +21,7 @@ from axis.tuning.result import Reference, Step, Tuned
 CORNER = {"load_mass": 0.05, "friction": -0.4, "torque_constant": -0.05, "stiffness": -0.2, "supply_voltage": -0.1}
 WINDOW = 25e-6
 COMMANDED_END = 0.61
+NAME, PAYLOAD = "Sample axis (invented)", "full tray"
 
 TEXT = """
 format = 1
@@ -135,9 +136,13 @@ NEVER = replace(
 MARGINS = Margins(True, 9.3, math.inf, 41.2, 1.74)
 
 
-def document(name: str = "Sample axis (invented)", loops: Loops | None = LOOPS, text: str = TEXT) -> Document:
-    """The sample axis under another name and with settings."""
-    read = read_text(text.replace("Sample axis (invented)", name.replace("\\", "\\\\").replace('"', '\\"')))
+def document(name: str = NAME, loops: Loops | None = LOOPS, text: str = TEXT, payload: str = PAYLOAD) -> Document:
+    """The sample axis under other names and with settings."""
+
+    def quoted(one: str) -> str:
+        return one.replace("\\", "\\\\").replace('"', '\\"')
+
+    read = read_text(text.replace(NAME, quoted(name)).replace(PAYLOAD, quoted(payload)))
     return replace(read, axis=replace(read.axis, loops=loops))
 
 
@@ -161,9 +166,9 @@ def tuned(axis: CompletedAxis) -> Tuned:
     return Tuned(result, textbook, path, 1.06, 0.71, 1, 12_000, True, "")
 
 
-def study(name: str = "Sample axis (invented)") -> Study:
+def study(name: str = NAME, payload: str = PAYLOAD) -> Study:
     """Tuned and checked."""
-    stated = document(name)
+    stated = document(name, payload=payload)
     axis = complete(stated.axis)
     search = tuned(axis)
     return Study(stated, axis, sizing=size(axis), tuned=search, settled=search.result.settled)
