@@ -46,6 +46,7 @@ def _gate() -> tuple[Callable[[Any], Any], Callable[[Any], Any]]:
     if UNCOMPILED:
         return (lambda function: function), (lambda function: function)
     import numba
+    from numba.extending import register_jitable
     from platformdirs import user_cache_path
 
     package = Path(__file__).parent
@@ -55,8 +56,7 @@ def _gate() -> tuple[Callable[[Any], Any], Callable[[Any], Any]]:
         settings: Any = numba.config
         settings.CACHE_DIR = str(folder)
     whole = numba.njit(cache=folder is not None, nogil=True)
-    without_entry: Any = {"no_cpython_wrapper": True, "no_cfunc_wrapper": True}
-    part = numba.njit(nogil=True, **without_entry)
+    part = register_jitable
     return whole, part
 
 
@@ -78,6 +78,6 @@ def compiled(function: F) -> F:
 
 
 def compiled_part(function: F) -> F:
-    """Compile a function that only compiled functions call: it becomes part of them, and takes half the time."""
+    """A function that becomes part of the compiled functions that call it; called from Python it stays plain Python."""
     result: F = _part_compiler(_seen(function))
     return result
