@@ -11,7 +11,7 @@ import math
 from bisect import bisect_right
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from itertools import accumulate
+from itertools import accumulate, pairwise
 
 from axis.completion import CompletedAxis, CompletedMove, at_corner
 from axis.mechanics.friction import steady_friction
@@ -22,6 +22,7 @@ from axis.sizing.polynomials import gauss_nodes
 _NODES = 7  # of Gauss-Legendre in one panel of speed
 _ACCURATE = 1e-10  # of the whole integral, when a panel is not halved any further
 _DEEPEST = 40
+_STRIBECK_EDGES = (0.5, 1.0, 2.0, 3.0, 6.0)  # times the Stribeck speed: too narrow a bump to be met by chance
 _SHORT_OF_LIMIT = 1e-6  # of a speed that torque allows to be approached but not to be reached
 _ITERATIONS = 200  # enough to halve any bracket down to one float
 
@@ -60,7 +61,8 @@ def move_bound(axis: CompletedAxis, move: CompletedMove, own_limits: bool = True
     top = _top_speed(axis, move, own_limits, speeding, braking)
     if top <= 0.0:
         return math.inf
-    up, down = _Ramp.of(speeding, top), _Ramp.of(braking, top)
+    breaks = [step * axis.stribeck_speed for step in _STRIBECK_EDGES if step * axis.stribeck_speed < top]
+    up, down = (_Ramp.of(rate, [0.0, *breaks, top]) for rate in (speeding, braking))
     whole, near = distance + window, distance - window
     peak = top
     if up.distance(top) + down.distance(top) > whole:
@@ -182,10 +184,14 @@ class _Ramp:
     distances: tuple[float, ...]  # [m] from rest to each edge
 
     @staticmethod
-    def of(rate: Callable[[float], float], top: float) -> _Ramp:
-        coarse = _panel(rate, 0.0, top)
-        scale = (_ACCURATE * coarse[0], _ACCURATE * coarse[1])
-        panels = _halved(rate, 0.0, top, coarse, scale, _DEEPEST)
+    def of(rate: Callable[[float], float], edges: list[float]) -> _Ramp:
+        coarse = [_panel(rate, low, high) for low, high in pairwise(edges)]
+        scale = (_ACCURATE * sum(time for time, _ in coarse), _ACCURATE * sum(distance for _, distance in coarse))
+        panels = [
+            panel
+            for (low, high), whole in zip(pairwise(edges), coarse, strict=True)
+            for panel in _halved(rate, low, high, whole, scale, _DEEPEST)
+        ]
         times = tuple(accumulate((time for _, time, _ in panels), initial=0.0))
         distances = tuple(accumulate((distance for _, _, distance in panels), initial=0.0))
         return _Ramp(rate, (0.0, *(edge for edge, _, _ in panels)), times, distances)

@@ -9,7 +9,7 @@ from axis.completion import CompletedAxis
 from axis.sizing.drive_checks import DRIVE_RULES
 from axis.sizing.finding import Corner, Finding, Rule
 from axis.sizing.motor_checks import MOTOR_RULES
-from axis.sizing.remedy import remedy
+from axis.sizing.remedy import Trials, remedy
 from axis.sizing.transmission_checks import stage_rules
 from axis.verdicts import Check
 
@@ -20,7 +20,7 @@ def rules(axis: CompletedAxis) -> tuple[Rule, ...]:
     return (*MOTOR_RULES, *DRIVE_RULES, *stages)
 
 
-def judge(rule: Rule, corners: Sequence[Corner]) -> Check:
+def judge(rule: Rule, corners: Sequence[Corner], trials: Trials) -> Check:
     """One check at its worst corner, with its remedy where it fails."""
     findings = [rule.measure(corner) for corner in corners]
     check = Check(rule.id, rule.name, "not applicable", rule.source, unit=rule.unit)
@@ -44,7 +44,9 @@ def judge(rule: Rule, corners: Sequence[Corner]) -> Check:
     if finding.holds:
         return check
     exceeding = {move for one in findings if not one.holds for move in one.moves}
-    return replace(check, remedy=remedy(rule, corner, replace(finding, moves=tuple(sorted(exceeding))), corners))
+    return replace(
+        check, remedy=remedy(rule, corner, replace(finding, moves=tuple(sorted(exceeding))), corners, trials)
+    )
 
 
 def _reason(finding: Finding, corner: Corner) -> str:

@@ -32,7 +32,9 @@ class Demand:
     inertia_ratio: float  # everything beyond the rotor, with the largest payload, over the rotor
     regenerated_energy: float  # [J] per cycle into the DC link
     brake_resistor_mean_power: float  # [W]
-    winding_temperature: float | None  # [K] hottest of the repeated cycle; None: the motor's data do not tell
+    winding_temperature: (
+        float | None
+    )  # [K] hottest of the repeated cycle; infinite: the copper runs away; None: unknown
 
     def as_json(self) -> dict[str, float]:
         """The keys that a results file carries; what is not known is left out."""
@@ -49,7 +51,7 @@ class Demand:
             "regenerated_energy_J": self.regenerated_energy,
             "brake_resistor_mean_power_W": self.brake_resistor_mean_power,
         }
-        if self.winding_temperature is not None:
+        if self.winding_temperature is not None and math.isfinite(self.winding_temperature):
             keys["winding_temperature_degC"] = self.winding_temperature - CELSIUS
         return keys
 

@@ -7,7 +7,7 @@ leaves open follows as it will when the change is typed.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from axis.complete import complete
@@ -33,26 +33,48 @@ class _Change:
     upwards: bool
 
 
-def remedy(rule: Rule, worst: Corner, finding: Finding, corners: Sequence[Corner]) -> str:
+class Trials:
+    """Changed axes at their corners, kept so that checks which pull the same lever share their cycles."""
+
+    def __init__(self) -> None:
+        self._axes: dict[Axis, dict[tuple[tuple[str, float], ...], Corner]] = {}
+
+    def corner(self, stated: Axis, shares: Mapping[str, float]) -> Corner:
+        """The axis with a change, completed, at one corner."""
+        known = self._axes.setdefault(stated, {})
+        if not known:
+            known[()] = Corner({}, complete(stated))
+        key = tuple(shares.items())
+        if key not in known:
+            known[key] = Corner(shares, known[()].nominal)
+        return known[key]
+
+
+def remedy(rule: Rule, worst: Corner, finding: Finding, corners: Sequence[Corner], trials: Trials) -> str:
     """The first lever that helps, in words; another part where none does."""
     stated = worst.nominal.stated
     for lever in rule.levers:
         change = _change(lever, stated, finding.moves, worst.load.trace.cycle_time)
-        found = _least(rule, change, worst, corners) if change is not None else None
+        found = _least(rule, change, worst, corners, trials) if change is not None else None
         if change is not None and found is not None:
             return change.words(found)
     return rule.part(finding)
 
 
-def _least(rule: Rule, change: _Change, worst: Corner, corners: Sequence[Corner]) -> str | None:
+def _least(rule: Rule, change: _Change, worst: Corner, corners: Sequence[Corner], trials: Trials) -> str | None:
     """The least change, as it is to be typed, with which the check holds at every corner; None where none does."""
+
+    def holds(value: float, where: Sequence[Corner]) -> bool:
+        axis = change.apply(value)
+        return all(rule.measure(trials.corner(axis, corner.shares)).holds for corner in where)
+
     looked_at = [worst]
     while True:
-        step = _first_step(rule, change, looked_at)
+        step = _first_step(change, lambda value: holds(value, looked_at))
         if step is None:
             return None
         text = _typed(change, change.value(step))
-        failing = [corner for corner in corners if not _holds(rule, change, float(text), [corner])]
+        failing = [corner for corner in corners if not holds(float(text), [corner])]
         if not failing:
             return text
         if failing[0] in looked_at:  # rounding alone cannot do this: the check holds on both sides of a gap
@@ -60,28 +82,21 @@ def _least(rule: Rule, change: _Change, worst: Corner, corners: Sequence[Corner]
         looked_at.append(failing[0])
 
 
-def _first_step(rule: Rule, change: _Change, corners: Sequence[Corner]) -> float | None:
-    fails, holds = 0.0, None
-    for n in range(1, _STEPS + 1):
-        step = n / _STEPS
-        if _holds(rule, change, change.value(step), corners):
-            holds = step
-            break
-        fails = step
-    if holds is None:
+def _first_step(change: _Change, holds: Callable[[float], bool]) -> float | None:
+    """The first step that holds, narrowed down from the last one that does not."""
+    good = next((n for n in range(1, _STEPS + 1) if holds(change.value(n / _STEPS))), None)
+    if good is None:
         return None
-    while abs(change.value(holds) - change.value(fails)) > _CLOSE * abs(change.value(holds) - change.start):
-        middle = 0.5 * (fails + holds)
-        if _holds(rule, change, change.value(middle), corners):
-            holds = middle
+    failing, holding = (good - 1) / _STEPS, good / _STEPS
+    while abs(change.value(holding) - change.value(failing)) > _CLOSE * abs(change.value(holding) - change.start):
+        middle = 0.5 * (failing + holding)
+        if not failing < middle < holding:
+            break
+        if holds(change.value(middle)):
+            holding = middle
         else:
-            fails = middle
-    return holds
-
-
-def _holds(rule: Rule, change: _Change, value: float, corners: Sequence[Corner]) -> bool:
-    axis = complete(change.apply(value))
-    return all(rule.measure(Corner(corner.shares, axis)).holds for corner in corners)
+            failing = middle
+    return holding
 
 
 def _typed(change: _Change, value: float) -> str:

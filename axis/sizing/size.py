@@ -8,6 +8,7 @@ from axis.completion import CompletedAxis
 from axis.sizing.checks import judge, rules
 from axis.sizing.demand import Demand, demand
 from axis.sizing.finding import corners
+from axis.sizing.remedy import Trials
 from axis.verdicts import Check, Verdict, worst
 
 
@@ -26,4 +27,5 @@ class Sizing:
 def size(axis: CompletedAxis) -> Sizing:
     """Demand and checks of a completed axis."""
     ends = corners(axis)
-    return Sizing(demand(ends[0].load), tuple(judge(rule, ends) for rule in rules(axis)))
+    trials = Trials()
+    return Sizing(demand(ends[0].load), tuple(judge(rule, ends, trials) for rule in rules(axis)))
