@@ -17,6 +17,7 @@ from axis.units import Plain, Quantity, digits_of, in_shown, pretty, shown_unit
 DIGITS = 6  # a setting is a number to be typed in: it is not rounded for the eye
 OPTIMUM = "modulus optimum from R, L and delay"
 SEARCHED = "search, worst corner"
+DESIGNED = "design; the search found nothing better"
 TYPED = "as in the axis file"
 _SAME = 1e-3  # relative difference below which a typed current loop is said to be the modulus optimum
 _NOTES = {
@@ -93,12 +94,13 @@ def _origin(study: Study, loops: Loops, path: str) -> str:
         return f"{TYPED}; equals the {OPTIMUM}" if current and _is_optimum(study, loops) else TYPED
     if current:
         return OPTIMUM
+    found = SEARCHED if study.tuned.searched else DESIGNED
     if path == "velocity.filter":
         return "one velocity period"
     if path.startswith("move_jerk["):
         move = study.axis.moves[int(path.partition("[")[2].rstrip("]")) - 1]
-        return SEARCHED if move.jerk_open else "as stated for the move"
-    return SEARCHED
+        return found if move.jerk_open else "as stated for the move"
+    return found
 
 
 def _is_optimum(study: Study, loops: Loops) -> bool:

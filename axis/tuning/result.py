@@ -48,6 +48,7 @@ class Tuned:
     seed: int
     runs: int  # simulated cycles of the search; verification apart
     margins_hold: bool
+    searched: bool  # the search found better than the designed start
     reason: str  # when nothing was found: what binds
 
     @property

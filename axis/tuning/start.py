@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-import math
-
 from axis.completion import CompletedAxis
 from axis.description.settings import Feedforward, Loops, PositionLoop, VelocityLoop
 from axis.loops.current import design_current_loop
 from axis.loops.lag import velocity_loop_lags
 
+WIDEST_BAND = 0.02  # of the published prototypes
 SETPOINT_WEIGHT = 0.5  # prototypes of order 3 and 4 both have a solution below 0.56
 
 
@@ -45,7 +44,7 @@ def own_band(window: float, excited: float) -> float:
         window [m]: half width, less what is kept back
         excited [m]: largest error on the move
     Returns [1]
-    window/excited, between 1e-5 and 0.1
+    window/excited, between 1e-5 and 0.02: wider bands have prototypes that swing too much for the usual margins
     Source: [own]; a profiled move with feedforward is no step, so never window over stroke
     """
-    return min(max(window / excited, 1e-5), 0.1) if excited > 0.0 and math.isfinite(excited) else 0.02
+    return min(max(window / excited, 1e-5), WIDEST_BAND) if excited > 0.0 else WIDEST_BAND

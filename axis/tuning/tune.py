@@ -12,7 +12,7 @@ import numpy as np
 from axis.completion import CompletedAxis
 from axis.description.corners import SHARES, corners
 from axis.description.settings import Loops
-from axis.errors import Stopped
+from axis.errors import NotComputable, Stopped
 from axis.loops.lag import velocity_loop_lags
 from axis.loops.start import Designed, designed_start
 from axis.loops.textbook import textbook_settings
@@ -22,14 +22,13 @@ from axis.tuning.evolution import Population, generations
 from axis.tuning.objective import VIOLATION_SCORE, Corner, Objective, extreme_plants, margin_corners
 from axis.tuning.reference import margins_everywhere, reference
 from axis.tuning.result import Reference, Step, Tuned
-from axis.tuning.start import bare_loops, own_band
+from axis.tuning.start import WIDEST_BAND, bare_loops, own_band
 from axis.tuning.variables import Space, rounded, space
 
 POPULATION = 32
 SCREENED = 640  # random points judged on their margins alone
 GENERATIONS = 10  # between two looks at all corners
 NEW_CORNERS = 2  # taken into the search at each look
-PUBLISHED_BAND = 0.02
 JERK_TIMES = (5e-3, 20e-3, 40e-3)  # [s] with which the designed start joins the search
 VERIFIED = 5  # looks that are tried in full
 NOTHING_FOUND = "no settings were found that hold at every computed corner"
@@ -67,8 +66,9 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     search = Objective(axis, bare, _first_corners(every), extreme_plants(axis))
     everywhere = Objective(axis, bare, every, [plant for _, plant in margin_corners(axis, SHARES)])
     started = _designed(axis, bare, search)
-    path = [_step(f"designed: prototype of order {started.order}", axis, started.loops, executor)]
-    looks = [_look(started.loops, everywhere, executor)]
+    designed = rounded(started.loops)
+    path = [_step(f"designed: prototype of order {started.order}", axis, designed, executor)]
+    looks = [_look(designed, everywhere, executor)]
     stopped = ""
     try:
         for look in _search(space(axis, bare, lag), started, search, everywhere, seed, runs, tell, executor):
@@ -89,6 +89,7 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
         seed=seed,
         runs=search.runs,
         margins_hold=holds,
+        searched=result.loops != designed,
         reason="" if holds and result.settled.verdict == "pass" else NOTHING_FOUND,
     )
 
@@ -110,8 +111,14 @@ def _designed(axis: CompletedAxis, bare: Loops, search: Objective) -> Designed:
         return designed_start(bare, plants, corners, rates, inertia, band, wishes)
 
     window = axis.stated.window.position * (1.0 - wishes.kept_back)
-    published = design(PUBLISHED_BAND)
-    own = design(own_band(window, search.largest_following_error(published.loops)))
+    published = design(WIDEST_BAND)
+    band = own_band(window, search.largest_following_error(published.loops))
+    if band == WIDEST_BAND:
+        return published
+    try:
+        own = design(band)
+    except NotComputable:
+        return published
     return min(published, own, key=lambda found: search.score(found.loops)[0])
 
 

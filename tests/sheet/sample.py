@@ -163,7 +163,7 @@ def tuned(axis: CompletedAxis) -> Tuned:
         settled(axis, NEVER),
     )
     path = (Step("order 3 with a real pole", math.inf, 40, True), Step("search on the worst corner", 1.29, 0, True))
-    return Tuned(result, textbook, path, 1.06, 0.71, 1, 12_000, True, "")
+    return Tuned(result, textbook, path, 1.06, 0.71, 1, 12_000, True, True, "")
 
 
 def study(name: str = NAME, payload: str = PAYLOAD) -> Study:
