@@ -14,6 +14,8 @@ from axis.simulation.plant import (
     DRAG,
     FAST,
     HOLDING,
+    J_LOAD,
+    J_MOTOR,
     K_TORQUE,
     LOAD_SPEED,
     MOTOR_DRAG,
@@ -63,6 +65,13 @@ def torque_on_load(p: Array, speed: float, twist: float, load: float, current: f
 
 
 @compiled_part
+def torque_on_motor(p: Array, speed: float, twist: float, load: float, current: float) -> float:
+    """Torque on the motor without its Coulomb friction; never asked of a rigid axis."""
+    result: float = p[K_TORQUE] * current - p[SPRING] * twist - p[DASHPOT] * (speed - load)
+    return result
+
+
+@compiled_part
 def advance(
     x: Array,
     senses: Whole,
@@ -84,6 +93,8 @@ def advance(
     speed, twist, load, current = x[MOTOR_SPEED], x[TWIST], x[LOAD_SPEED], x[CURRENT]
     motor_sense, load_sense = senses[0], senses[1]
     holding, drag = p[HOLDING], p[MOTOR_DRAG]
+    on_motor = drag * motor_sense
+    on_load = p[SLIDING] * load_sense + p[PULL]
     plain = True
     before = 0.0
     if holding > 0.0:
@@ -94,16 +105,13 @@ def advance(
             plain = load * load_sense > p[FAST]
     if drag > 0.0 and plain:
         if motor_sense == 0:
-            spring = p[SPRING] * twist + p[DASHPOT] * (speed - load)
-            plain = abs(p[K_TORQUE] * current - spring) <= drag
+            plain = abs(torque_on_motor(p, speed, twist, load, current)) <= drag
         else:
             plain = speed * motor_sense > 0.0
     if not plain:
         by_series(x, senses, p, voltage, step, o, time, rest_offset, c)
         return
     mode = (2 if drag > 0.0 and motor_sense == 0 else 0) + (1 if holding > 0.0 and load_sense == 0 else 0)
-    on_motor = drag * motor_sense
-    on_load = p[SLIDING] * load_sense + p[PULL]
     for row in range(PADDED):
         new[row] = (
             matrices[segment, mode, 0, row] * speed
@@ -121,13 +129,18 @@ def advance(
             bulge = BULGE * step * p[SPRING] * max(abs(speed), abs(new_speed))
             plain = max(before, after) + bulge <= holding
         else:
-            plain = new_load * load_sense > p[FAST]
+            before = torque_on_load(p, speed, twist, load, current) - p[SLIDING] * load_sense
+            after = torque_on_load(p, new_speed, new_twist, new_load, new_current) - p[SLIDING] * load_sense
+            bulge = BULGE * step * max(abs(before), abs(after)) / p[J_LOAD]
+            plain = min(load * load_sense, new_load * load_sense) - bulge > p[FAST]
     if drag > 0.0 and plain:
         if motor_sense == 0:
-            spring = p[SPRING] * new_twist + p[DASHPOT] * (new_speed - new_load)
-            plain = abs(p[K_TORQUE] * new_current - spring) <= drag
+            plain = abs(torque_on_motor(p, new_speed, new_twist, new_load, new_current)) <= drag
         else:
-            plain = new_speed * motor_sense > 0.0
+            before = torque_on_motor(p, speed, twist, load, current) - on_motor
+            after = torque_on_motor(p, new_speed, new_twist, new_load, new_current) - on_motor
+            bulge = BULGE * step * max(abs(before), abs(after)) / p[J_MOTOR]
+            plain = min(speed * motor_sense, new_speed * motor_sense) - bulge > 0.0
     if not plain:
         by_series(x, senses, p, voltage, step, o, time, rest_offset, c)
         return

@@ -43,7 +43,8 @@ dry_friction = compiled_part(stribeck)
 
 TERMS = 20
 ACCURACY = 1e-14  # of the largest term of each state: where the series may end
-SHORTEST = 10  # halvings of a step that does not converge
+NEARLY = 1.0 + 1e-9  # a load this close to the speed at which friction is constant counts as slower
+SHORTEST = 30  # halvings of a step that does not converge
 CHECKS = 4  # points of a step at which events are looked for
 
 MOTOR, LOAD = range(2)  # sides of the spring
@@ -89,7 +90,7 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
     The fading part of the friction, F = (F_S − F_C)·exp(u) with u = −(ω/ω_S)², follows from n·Fₙ = Σ k·u_k·Fₙ₋ₖ, which
     is the derivative F' = u'·F term by term.
     """
-    fades = load_sense != 0 and p[FADING_SPEED] > 0.0 and abs(c[LOAD_SPEED, 0]) <= 2.0 * p[FAST]
+    fades = load_sense != 0 and p[FADING_SPEED] > 0.0 and abs(c[LOAD_SPEED, 0]) <= NEARLY * p[FAST]
     per_square = -1.0 / (p[FADING_SPEED] * p[FADING_SPEED]) if fades else 0.0
     rigid = p[RIGID] != 0.0
     for n in range(TERMS + 1):
@@ -103,6 +104,7 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
             on_load -= p[PULL]
             friction = load_sense * p[SLIDING]
             drag = motor_sense * p[MOTOR_DRAG]
+        c[EXPONENT, n] = 0.0
         if fades:
             if n == 0:
                 excess = dry_friction(load, p[SLIDING], p[HOLDING], p[FADING_SPEED]) - p[SLIDING]
@@ -140,10 +142,17 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
 
 @compiled_part
 def shorten(c: Array, order: int) -> float:
-    """Halve the step until the last two terms vanish; rescales the series and returns the share of the step left."""
+    """Halve the step until the last two terms vanish; rescales the series and returns the share of the step left.
+
+    The exponent of the fading friction may change by three at most: beyond it the terms of the exponential grow before
+    they fall, and two small ones say nothing.
+    """
     share = 1.0
     for _ in range(SHORTEST):
-        if converged(c, order):
+        change = 0.0
+        for n in range(1, order + 1):
+            change += abs(c[EXPONENT, n])
+        if change <= 3.0 and converged(c, order):
             break
         share *= 0.5
         factor = 1.0
@@ -155,26 +164,26 @@ def shorten(c: Array, order: int) -> float:
 
 
 @compiled_part
-def stops_at(c: Array, row: int, order: int, sense: int) -> float:
-    """Share of the step at which a moving side comes to zero speed; above 1: not in this step."""
+def slows_at(c: Array, row: int, order: int, sense: int, level: float) -> float:
+    """Share of the step at which a moving side comes down to a speed, zero for a stop; above 1: not in this step."""
     reach = 0.0
     for n in range(1, order + 1):
         reach += abs(c[row, n])
-    if abs(c[row, 0]) > reach:
+    if abs(c[row, 0]) - level > reach:
         return 2.0
     rests = c[row, 0] == 0.0
     before = 0.0
     for check in range(1, CHECKS + 1):
         s = check / CHECKS
         speed = slope_from_rest(c, row, order, s) if rests else value(c, row, order, s)
-        if speed * sense < 0.0:
+        if speed * sense < level:
             after = s
             if rests and before == 0.0 and slope_from_rest(c, row, order, 0.0) * sense <= 0.0:
                 return 0.0
             for _ in range(60):
                 middle = 0.5 * (before + after)
                 speed = slope_from_rest(c, row, order, middle) if rests else value(c, row, order, middle)
-                if speed * sense < 0.0:
+                if speed * sense < level:
                     after = middle
                 else:
                     before = middle
@@ -227,7 +236,7 @@ def series_step(x: Array, senses: Whole, p: Array, voltage: float, step: float, 
     for row in range(CURRENT + 1):
         c[row, 0] = x[row]
     order = expand(c, p, senses[0], senses[1], voltage, step)
-    share = shorten(c, order) if order == TERMS else 1.0
+    share = shorten(c, order)
     s = 1.0
     which = -1
     if events:
@@ -238,9 +247,13 @@ def series_step(x: Array, senses: Whole, p: Array, voltage: float, step: float, 
             if senses[side] == 0:
                 found = starts_at(c, ON_MOTOR + side, order, friction)
             else:
-                found = stops_at(c, MOTOR_SPEED + 2 * side, order, senses[side])
+                found = slows_at(c, MOTOR_SPEED + 2 * side, order, senses[side], 0.0)
             if found < s or (found == s and which < 0):
                 s, which = found, side
+    if senses[1] != 0 and abs(x[LOAD_SPEED]) > NEARLY * p[FAST] and p[FAST] > 0.0:
+        slows = slows_at(c, LOAD_SPEED, order, senses[1], p[FAST])
+        if slows < s:  # from here on the fading friction belongs to the series
+            s, which = slows, -1
     for row in range(CURRENT + 1):
         x[row] = value(c, row, order, s)
     if which >= 0:
