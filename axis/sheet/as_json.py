@@ -4,17 +4,19 @@ from __future__ import annotations
 
 import json
 import math
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from axis.cautions import cautions
 from axis.description.settings import Loops
-from axis.loops.margins import Margins
 from axis.settling.verdict import MoveVerdict
 from axis.sheet.shown import tool_version
 from axis.simulation.record import MoveOutcome
 from axis.study import Study
-from axis.tuning.result import Reference
 from axis.verdicts import Check
+
+if TYPE_CHECKING:  # sizing alone loads neither the loops nor the compiler
+    from axis.loops.margins import Margins
+    from axis.tuning.result import Reference
 
 FORMAT = 1
 

@@ -5,19 +5,21 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from axis.description.drive import Drive
 from axis.description.motor import Motor
 from axis.description.moves import Move, Window
-from axis.loops.margins import LIMIT_dB, Margins
 from axis.settling.verdict import MoveVerdict, corner_in_words
 from axis.sheet.shown import NOTHING, check_numbers, in_unit, length_text, percent, quantity_text, time_text
 from axis.simulation.record import MoveOutcome
 from axis.study import Study
-from axis.tuning.reference import smallest_margins
-from axis.tuning.result import Reference
 from axis.units import digits_of
 from axis.verdicts import Check, Verdict
+
+if TYPE_CHECKING:  # sizing alone loads neither the loops nor the compiler
+    from axis.loops.margins import Margins
+    from axis.tuning.result import Reference
 
 PRELIMINARY = "preliminary, to be verified on the machine"
 _ORDER: dict[Verdict, int] = {"fail": 0, "not evaluated": 1, "pass": 2, "not applicable": 3}
@@ -201,7 +203,11 @@ def margins_of(study: Study) -> Margins | None:
     if study.tuned is not None:
         return study.tuned.result.margins
     loops = study.document.axis.loops
-    return None if loops is None else smallest_margins(study.axis, loops)[0]
+    if loops is None:
+        return None
+    from axis.tuning.reference import smallest_margins
+
+    return smallest_margins(study.axis, loops)[0]
 
 
 def margin_rows(study: Study) -> tuple[MarginRow, ...]:
@@ -209,6 +215,8 @@ def margin_rows(study: Study) -> tuple[MarginRow, ...]:
     found, asked = margins_of(study), study.axis.stated.tuning
     if found is None:
         return ()
+    from axis.loops.margins import LIMIT_dB
+
     textbook = study.tuned.textbook.margins if study.tuned is not None else None
 
     def decibel(value: float) -> str:

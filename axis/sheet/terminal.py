@@ -18,7 +18,7 @@ from axis.sheet.rows import (
     path_rows,
 )
 from axis.sheet.settings import setting_rows
-from axis.sheet.shown import NOTHING, SHAPES, WORDS
+from axis.sheet.shown import NOTHING, SHAPES, WORDS, percent
 from axis.sheet.values import understood
 from axis.study import Study
 
@@ -76,7 +76,9 @@ def _checks(rows: Iterable[CheckRow]) -> list[str]:
     lines = []
     for row in rows:
         numbers = f": {row.demand}" if row.demand != NOTHING else ""
-        numbers += f" of {row.limit}, {row.margin_text} left" if row.limit != NOTHING and row.margin is not None else ""
+        if row.limit != NOTHING and row.margin is not None:
+            left = f"{row.margin_text} left" if row.margin >= 0.0 else f"{percent(-row.margin)} over"
+            numbers += f" of {row.limit}, {left}"
         lines.append(f"  {SHAPES[row.verdict]} {WORDS[row.verdict]:<14} {row.name}{numbers}")
         if row.verdict in ("fail", "not evaluated") and row.reason:
             lines.append(f"      {row.reason}")

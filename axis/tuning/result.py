@@ -4,11 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from axis.description.settings import Loops
-from axis.loops.margins import Margins
 from axis.settling.verdict import Settled
 from axis.verdicts import Verdict
+
+if TYPE_CHECKING:
+    from axis.loops.margins import Margins
 
 
 @dataclass(frozen=True)
