@@ -61,25 +61,26 @@ class Load:
     """One axis at one corner over its cycle; every figure is computed once, when it is first asked for."""
 
     axis: CompletedAxis
+    course: Trace | None = None  # where it is known already: torques do not depend on the motor's constants
 
     @cached_property
     def trace(self) -> Trace:
-        return trace(self.axis)
+        return self.course if self.course is not None else trace(self.axis)
 
-    @cached_property
+    @property
     def peak_torques(self) -> Array:
         """[N·m] largest |torque| in each segment."""
-        return self.trace.peaks(self.trace.torque)
+        return self.trace.peak_torques
 
-    @cached_property
+    @property
     def peak_speeds(self) -> Array:
         """[rad/s] largest |speed| in each segment."""
-        return self.trace.peaks(self.trace.speed)
+        return self.trace.peak_speeds
 
-    @cached_property
+    @property
     def rms_torque(self) -> float:
         """[N·m]"""
-        return math.sqrt(self.trace.mean_square(self.trace.torque))
+        return self.trace.rms_torque
 
     @cached_property
     def rms_current(self) -> float:

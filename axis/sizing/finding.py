@@ -55,6 +55,7 @@ class Corner:
 
     shares: Mapping[str, float]
     nominal: CompletedAxis
+    like: Corner | None = None  # differs from this one in the torque constant alone, so that it has the same torques
 
     @cached_property
     def axis(self) -> CompletedAxis:
@@ -62,7 +63,7 @@ class Corner:
 
     @cached_property
     def load(self) -> Load:
-        return Load(self.axis)
+        return Load(self.axis, None if self.like is None else self.like.load.trace)
 
     @property
     def strength(self) -> float:
@@ -83,9 +84,28 @@ class Rule:
     part: Callable[[Finding], str] = lambda finding: ""  # the part that would do, where no lever helps
 
 
+class Corners:
+    """The corners of one axis, each made once; those that differ in the torque constant alone share their torques."""
+
+    def __init__(self, axis: CompletedAxis) -> None:
+        self._axis = axis
+        self._known: dict[tuple[tuple[str, float], ...], Corner] = {}
+        self._torques: dict[tuple[tuple[str, float], ...], Corner] = {}
+
+    def at(self, shares: Mapping[str, float]) -> Corner:
+        """The axis with its tolerances at these signed shares."""
+        key = tuple(shares.items())
+        if key not in self._known:
+            same = tuple((name, share) for name, share in key if name != "torque_constant")
+            self._known[key] = Corner(shares, self._axis, self._torques.get(same))
+            self._torques.setdefault(same, self._known[key])
+        return self._known[key]
+
+
 def corners(axis: CompletedAxis) -> tuple[Corner, ...]:
     """The nominal axis and every combination of the tolerance ends that change a demand or a limit."""
     names = [name for name in SCALED if getattr(axis.stated.tolerance, name) > 0.0]
     ends = [(-getattr(axis.stated.tolerance, name), getattr(axis.stated.tolerance, name)) for name in names]
     shares = [dict(zip(names, values, strict=True)) for values in combinations(*ends)] if names else []
-    return (Corner({}, axis), *(Corner(each, axis) for each in shares))
+    known = Corners(axis)
+    return tuple(known.at(each) for each in ({}, *shares))

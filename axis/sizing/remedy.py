@@ -13,7 +13,7 @@ from dataclasses import dataclass, replace
 from axis.complete import complete
 from axis.description.axis import Axis
 from axis.description.moves import Move
-from axis.sizing.finding import Corner, Finding, Lever, Rule
+from axis.sizing.finding import Corner, Corners, Finding, Lever, Rule
 
 _STEPS = 16  # towards the furthest change, before the first that passes is narrowed down
 _CLOSE = 1e-3  # of the change: where the halving ends
@@ -37,17 +37,13 @@ class Trials:
     """Changed axes at their corners, kept so that checks which pull the same lever share their cycles."""
 
     def __init__(self) -> None:
-        self._axes: dict[Axis, dict[tuple[tuple[str, float], ...], Corner]] = {}
+        self._axes: dict[Axis, Corners] = {}
 
     def corner(self, stated: Axis, shares: Mapping[str, float]) -> Corner:
         """The axis with a change, completed, at one corner."""
-        known = self._axes.setdefault(stated, {})
-        if not known:
-            known[()] = Corner({}, complete(stated))
-        key = tuple(shares.items())
-        if key not in known:
-            known[key] = Corner(shares, known[()].nominal)
-        return known[key]
+        if stated not in self._axes:
+            self._axes[stated] = Corners(complete(stated))
+        return self._axes[stated].at(shares)
 
 
 def remedy(rule: Rule, worst: Corner, finding: Finding, corners: Sequence[Corner], trials: Trials) -> str:

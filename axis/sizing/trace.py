@@ -6,6 +6,7 @@ chain is quadratic too as long as no friction and no flow of power turns round. 
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, replace
 from functools import cached_property
 
@@ -35,11 +36,6 @@ class Trace:
         """[s]"""
         return float(self.duration.sum())
 
-    @cached_property
-    def direction(self) -> Array:
-        """Sign of the motor's speed in each segment; 0 at rest."""
-        return np.asarray(np.sign(value(self.speed, 0.5 * self.duration)))
-
     def integral(self, polynomial: Array) -> Array:
         """Integral of a polynomial over each segment."""
         powers = np.arange(1.0, polynomial.shape[1] + 1.0)
@@ -54,6 +50,21 @@ class Trace:
     def peaks(self, polynomial: Array) -> Array:
         """Largest absolute value in each segment."""
         return np.maximum(largest(polynomial, self.duration), largest(-polynomial, self.duration))
+
+    @cached_property
+    def peak_torques(self) -> Array:
+        """[N·m] largest |torque| of the motor in each segment."""
+        return self.peaks(self.torque)
+
+    @cached_property
+    def peak_speeds(self) -> Array:
+        """[rad/s] largest |speed| of the motor in each segment."""
+        return self.peaks(self.speed)
+
+    @cached_property
+    def rms_torque(self) -> float:
+        """[N·m] of the motor, over moves and dwells."""
+        return math.sqrt(self.mean_square(self.torque))
 
     def mean_absolute_speed(self) -> float:
         """[rad/s] mean of |speed| over the cycle."""
