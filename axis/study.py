@@ -21,7 +21,7 @@ if TYPE_CHECKING:
     from axis.tuning.result import Tuned
 
 DEFAULT_SEED = 1
-DEFAULT_RUNS = 6_000
+DEFAULT_RUNS = 5_000
 
 NO_LOOPS = "whether it settles is not evaluated: the file has no [loops]; settlepoint tune --write puts them there"
 

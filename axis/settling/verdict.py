@@ -134,7 +134,7 @@ def _rule_check(axis: CompletedAxis, rule: Rule, n: int, at: list[tuple[Mapping[
     if rule.limit is None:
         return Check(identity, name, "not evaluated", SOURCE, reason=f"{rule.missing} is not stated")
     passes = demand <= rule.limit
-    margin = (rule.limit - demand) / rule.limit if rule.limit > 0 and math.isfinite(demand) else None
+    margin = min((rule.limit - demand) / rule.limit, 1.0) if rule.limit > 0 and math.isfinite(demand) else None
     return Check(
         identity,
         name,

@@ -140,7 +140,7 @@ def headline(study: Study) -> str:
     else:
         text = (
             f"The load comes to rest inside {window} at all {settled.corners} computed corners, at the latest "
-            f"{time_text(slowest.worst.settling_time)} after the commanded end."
+            f"{_beside_the_end(slowest.worst.settling_time)}."
         )
     missed = [check for check in _all_checks(study) if check.verdict == "fail"]
     open_ = [check for check in _all_checks(study) if check.verdict == "not evaluated"]
@@ -310,6 +310,11 @@ def _all_checks(study: Study) -> tuple[Check, ...]:
     sized = study.sizing.checks if study.sizing is not None else ()
     settled = study.settled.all_checks if study.settled is not None else ()
     return (*sized, *settled)
+
+
+def _beside_the_end(settling_time: float) -> str:
+    side = "after" if settling_time >= 0.0 else "before"
+    return f"{time_text(abs(settling_time))} {side} the commanded end"
 
 
 def _count(n: int, word: str) -> str:

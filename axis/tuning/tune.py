@@ -140,6 +140,7 @@ def _search(
         return search.scores([unknowns.loops(point) for point in points], beat, executor)
 
     steps = generations(population, evaluate, random)
+    last: Loops | None = None
     while search.runs < runs:
         for _ in range(GENERATIONS):
             population = next(steps)
@@ -147,7 +148,11 @@ def _search(
             tell(share, _in_words(population.scores[population.best], len(search.corners)))
             if search.runs >= runs:
                 break
-        look = _look(rounded(unknowns.loops(population.points[population.best])), everywhere, executor)
+        candidate = rounded(unknowns.loops(population.points[population.best]))
+        if candidate == last:
+            continue
+        last = candidate
+        look = _look(candidate, everywhere, executor)
         yield look
         known = search.corners
         search.add([corner for corner in look.corners if corner not in known][:NEW_CORNERS])
