@@ -161,11 +161,18 @@ def peaks(corner: Corner, values: Array, limit: float) -> Finding:
     return Finding(float(values.max()), limit, moves=moves)
 
 
-def at_least(what: str, digits: int = 3) -> Callable[[Finding], str]:
-    """Remedy by another part: `what` with the demand, rounded up, in place of the braces."""
+def at_least(what: str, unit: float = 1.0) -> Callable[[Finding], str]:
+    """Remedy by another part.
+
+    Parameters
+        what: with braces where the demand stands, rounded up
+        unit [1]: SI value of one unit of the number in the braces
+    Returns the remedy of a finding
+    Source: [own]
+    """
 
     def text(finding: Finding) -> str:
-        return what.format(_rounded_up(finding.demand, digits)) if finding.demand is not None else ""
+        return what.format(_rounded_up(finding.demand / unit, 3)) if finding.demand is not None else ""
 
     return text
 
@@ -236,7 +243,7 @@ MOTOR_RULES = (
         "own",
         _speed,
         ("speed", "duration"),
-        at_least("a motor for at least {} rad/s"),
+        at_least("a motor for at least {} rpm", RPM),
     ),
     Rule(
         "motor_winding_temperature",

@@ -49,7 +49,7 @@ class Trace:
 
     def peaks(self, polynomial: Array) -> Array:
         """Largest absolute value in each segment."""
-        return np.maximum(largest(polynomial, self.duration), largest(-polynomial, self.duration))
+        return np.abs(np.maximum(largest(polynomial, self.duration), largest(-polynomial, self.duration)))
 
     @cached_property
     def peak_torques(self) -> Array:

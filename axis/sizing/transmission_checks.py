@@ -9,7 +9,7 @@ import numpy as np
 
 from axis.description.transmission import BallScrew, Gearbox
 from axis.sizing.finding import Corner, Finding, Rule
-from axis.sizing.motor_checks import at_least, peaks
+from axis.sizing.motor_checks import RPM, at_least, peaks
 from axis.sizing.polynomials import gauss_nodes, value
 
 
@@ -69,7 +69,7 @@ def stage_rules(stage: int, kind: str) -> tuple[Rule, ...]:
         "own",
         partial(_speed, stage),
         ("speed", "duration"),
-        at_least("a stage for an input speed of at least {} rad/s"),
+        at_least("a stage for an input speed of at least {} rpm", RPM),
     )
     if kind == "ball_screw":
         force = Rule(
