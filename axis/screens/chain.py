@@ -24,7 +24,7 @@ def chain(study: Study) -> Markup:
         boxes.append(_stage(stage))
     inertial = "inertia" if axis.rotary else "mass"
     load = quantity_text(getattr(axis.load, inertial), Load, inertial)
-    heaviest = f" + up to {_payload(study)}" if axis.payloads else ""
+    heaviest = f" + up to {_payload(study)} payload" if axis.payloads else ""
     boxes.append(("Load", load + heaviest))
     inside = '<span aria-hidden="true">━</span>'.join(
         f"<div><b>{text(title)}</b>{text(figure)}</div>" for title, figure in boxes

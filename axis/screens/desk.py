@@ -48,16 +48,17 @@ def understand(text: str) -> Understood:
     except InputError as error:
         return Understood(None, error.problems)
     except Exception as error:  # whatever goes wrong, the page that mends it must come up
-        return Understood(None, (), _internal(error))
+        return Understood(None, (), internal(error))
     try:
         return Understood(size(study))
     except SettlepointError as error:
         return Understood(study, (), str(error))
     except Exception as error:
-        return Understood(study, (), _internal(error))
+        return Understood(study, (), internal(error))
 
 
-def _internal(error: Exception) -> str:
+def internal(error: Exception) -> str:
+    """A fault of our own, as the user is told of it."""
     return f"internal error, please report it with the axis file: {type(error).__name__}: {error}"
 
 

@@ -46,8 +46,15 @@ def show_sections(
         if own:
             st.html(look.box("To mend here:", map(str, own), "wrong"))
         for field in section.fields:
+            if not field.typed and _of_other_travel(field.path, rotary):
+                continue
             wrong = [str(problem) for problem in problems if problem.path == field.path]
             _row(field, rotary, rows.get(field.path), wrong)
+
+
+def _of_other_travel(path: str, rotary: bool) -> bool:
+    """A mass where the axis turns, an inertia where it travels in a line."""
+    return path.startswith(("load.", "payload[")) and path.endswith(".mass" if rotary else ".inertia")
 
 
 def title(path: str) -> str:
@@ -57,13 +64,12 @@ def title(path: str) -> str:
 
 
 def _row(field: Field, rotary: bool, understood: ValueRow | None, wrong: list[str]) -> None:
-    words, typed, echo = st.columns([5, 4, 8], gap="small", vertical_alignment="top")
+    words, typed, echo = st.columns([5, 4, 8], gap="small", vertical_alignment="center")
     declared = field.declaration
     key = field.path.rpartition(".")[2]
-    symbol = declared.symbol.replace("_", "")
     with words:
-        mark = f' <span class="sp-symbol">{look.text(symbol)}</span>' if symbol else ""
-        st.html(f'<div class="sp-label">{look.text(declared.words)}{mark}<br><small>{look.text(key)}</small></div>')
+        mark = look.symbol(declared.symbol)
+        st.html(f'<div class="sp-label">{look.text(declared.words)} {mark} <small>{look.text(key)}</small></div>')
     with typed:
         _input(field, rotary)
     with echo:

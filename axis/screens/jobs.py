@@ -13,6 +13,7 @@ from dataclasses import dataclass, field, replace
 
 from axis.description.axis import Axis
 from axis.errors import SettlepointError, Stopped
+from axis.plots.figure import Figure
 from axis.study import Study, check, tune
 
 MOST_DRAFTS = 24  # whose results are kept at a time
@@ -25,7 +26,7 @@ class Job:
     name: str
     study: Study  # what it computes from
     share: float = 0.0
-    best: str = "starting"
+    best: str = "starting; the first time on a machine the simulation is compiled, for about a minute"
     failed: str = ""  # why there is no result
     ended: bool = False
     seen: bool = False  # a window has taken note of its end
@@ -68,6 +69,8 @@ class Results:
     settled: Study | None = None
     tuning: Job | None = None
     checking: Job | None = None
+    figures: dict[int, Figure] = field(default_factory=dict)  # tail of each move of `settled`, as far as drawn
+    before: dict[int, Figure] = field(default_factory=dict)  # the same of what was settled before
 
     def is_tuned(self, axis: Axis) -> bool:
         """Whether the search was made for this axis; the settings in its file play no part in it."""
@@ -77,12 +80,19 @@ class Results:
         """Whether the simulated cycles are those of this axis under these settings."""
         return self.settled is not None and self.settled.document.axis == axis
 
+    def settle(self, found: Study) -> None:
+        """Take over newly simulated cycles; the pictures of those before stay for comparison."""
+        if self.figures:
+            self.before = self.figures
+        self.figures, self.settled = {}, found
+
     def start_tuning(self, study: Study, seed: int, runs: int) -> None:
         """Search settings for the axis; what was being searched or checked before is stopped."""
 
         def work(job: Job) -> None:
             found = tune(study, seed, runs, job.progress)
-            self.tuned = self.settled = found
+            self.tuned = found
+            self.settle(found)
 
         self.stop()
         self.tuning = Job("tuning", study)
@@ -94,7 +104,7 @@ class Results:
         def work(job: Job) -> None:
             found = check(study, job.progress)
             if not job.stopping:
-                self.settled = found
+                self.settle(found)
 
         running = self.checking
         if running is not None and running.study.document.axis == study.document.axis:
@@ -130,7 +140,7 @@ class Board:
         """A draft that goes on under a new key takes its results along; work under way stays with the old one."""
         before = self.of(old)
         with self._lock:
-            self._results[new] = replace(before, tuning=None, checking=None)
+            self._results[new] = replace(before, tuning=None, checking=None, figures=dict(before.figures))
 
 
 def without_loops(axis: Axis) -> Axis:

@@ -37,6 +37,12 @@ def command(port: int) -> list[str]:
     return [sys.executable, "-m", "streamlit", "run", str(START), *options]
 
 
+def environment() -> dict[str, str]:
+    """The server serves the package that started it, wherever it is started from."""
+    paths = [str(START.parents[2]), os.environ.get("PYTHONPATH", "")]
+    return {**os.environ, "PYTHONPATH": os.pathsep.join(path for path in paths if path)}
+
+
 def free_port(asked: int | None) -> int:
     """The port asked for, or the first that nobody listens on."""
     for port in (asked,) if asked is not None else range(FIRST_PORT, LAST_PORT + 1):
@@ -54,7 +60,7 @@ def launch(port: int | None = None, open_browser: bool = True) -> int:
     """Serve the screens until they are stopped; returns the server's exit code."""
     chosen = free_port(port)
     address = f"http://{HOST}:{chosen}"
-    server = subprocess.Popen(command(chosen), stdout=subprocess.DEVNULL, env=os.environ)
+    server = subprocess.Popen(command(chosen), stdout=subprocess.DEVNULL, env=environment())
     try:
         if answers(server, chosen):
             print(f"The screens are at {address}, on this machine only. Ctrl-C ends them.", flush=True)

@@ -27,9 +27,17 @@ def text(words: object) -> str:
     return html.escape(str(words), quote=True)
 
 
-def verdict(value: Verdict) -> Markup:
+def verdict(value: Verdict, words: str = "") -> Markup:
     """A verdict: word, shape and colour."""
-    return Markup(f'<span class="sp-verdict sp-{_CLASSES[value]}"><i>{SHAPES[value]}</i>{WORDS[value]}</span>')
+    said = text(words or WORDS[value])
+    return Markup(f'<span class="sp-verdict sp-{_CLASSES[value]}"><i>{SHAPES[value]}</i>{said}</span>')
+
+
+def symbol(name: str) -> Markup:
+    """A symbol with its index: K_p."""
+    head, _, index = name.partition("_")
+    lowered = f"<sub>{text(index)}</sub>" if index else ""
+    return Markup(f'<span class="sp-symbol">{text(head)}{lowered}</span>' if name else "")
 
 
 def in_title(name: str, value: Verdict, words: str = "") -> str:
@@ -37,12 +45,15 @@ def in_title(name: str, value: Verdict, words: str = "") -> str:
     return f"{name}   {SHAPES[value]} {words or WORDS[value]}"
 
 
-def heading(title: str, value: Verdict, sentence: str) -> str:
-    return f'<div class="sp-head"><h1>{text(title)}</h1>{verdict(value)}<p>{text(sentence)}</p></div>'
+def heading(title: str, value: Verdict, sentence: str, words: str = "") -> str:
+    """The head of a page: what it answers, the answer in a word, and in a sentence."""
+    return f'<div class="sp-head"><h1>{text(title)}</h1>{verdict(value, words)}<p>{text(sentence)}</p></div>'
 
 
-def part(title: str, note: str = "") -> str:
-    return f'<div class="sp-part" role="heading" aria-level="2">{text(title)} <small>{text(note)}</small></div>'
+def part(title: str, note: str = "", value: Verdict | None = None) -> str:
+    """The head of a part of a page, with its verdict where it has one."""
+    said = "" if value is None else f" {verdict(value)}"
+    return f'<div class="sp-part" role="heading" aria-level="2">{text(title)}{said} <small>{text(note)}</small></div>'
 
 
 def box(sentence: str, items: Iterable[str] = (), kind: str = "", role: str = "note") -> str:
@@ -57,13 +68,13 @@ def stale(content: str, grey: bool) -> str:
     return f'<div class="sp-stale" aria-disabled="true">{content}</div>' if grey else content
 
 
-def point(value: str) -> tuple[str, str]:
-    """A number with its unit, cut where the decimal point stands, so that a column can be aligned on it."""
-    number, gap, unit = value.partition(" ")
-    if not number.lstrip("-+±≥≤>").replace(".", "").isdigit():
-        return text(value), ""
+def point(value: str) -> tuple[str, str, str]:
+    """A number with its unit, cut at the decimal point and before the unit, so that a column can be aligned on it."""
+    number, _, unit = value.partition(" ")
+    if not number.lstrip("-+±≥≤>").replace(".", "").isdigit() or " / " in unit:
+        return "", "", value
     whole, dot, rest = number.partition(".")
-    return text(whole), text(f"{dot}{rest}{gap}{unit}")
+    return whole, f"{dot}{rest}", unit
 
 
 def table(head: Sequence[str], rows: Iterable[Sequence[str]], numbers: Sequence[int] = ()) -> str:
@@ -73,9 +84,9 @@ def table(head: Sequence[str], rows: Iterable[Sequence[str]], numbers: Sequence[
         if n not in numbers:
             return f"<{tag}>{value if isinstance(value, Markup) else text(value)}</{tag}>"
         if tag == "th":
-            return f'<th colspan="2">{text(value)}</th>'
-        whole, rest = point(value)
-        return f'<td class="w">{whole}</td><td class="f">{rest}</td>'
+            return f'<th colspan="3">{text(value)}</th>'
+        whole, rest, unit = point(value)
+        return f'<td class="w">{text(whole)}</td><td class="f">{text(rest)}</td><td class="u">{text(unit)}</td>'
 
     def row(values: Sequence[str], tag: str) -> str:
         return "<tr>" + "".join(cell(n, value, tag) for n, value in enumerate(values)) + "</tr>"

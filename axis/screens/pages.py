@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import logging
 from pathlib import Path
 
 import streamlit as st
@@ -28,7 +29,14 @@ def main() -> None:
     st.query_params["axis"] = st.session_state["key"]  # changing the page clears it
     for words in desk.notices():
         st.html(look.box(words, kind="care", role="alert"))
-    page.run()
+    try:
+        page.run()
+    except Exception as error:
+        logging.getLogger(__name__).exception("a page raised")
+        sentence = f"internal error, please report it with the axis file: {type(error).__name__}: {error}"
+        st.html(
+            look.box(f"This page cannot be drawn. Everything you typed is kept. {sentence}", kind="wrong", role="alert")
+        )
 
 
 def titles() -> dict[str, str]:

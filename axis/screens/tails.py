@@ -11,20 +11,29 @@ from axis.errors import SettlepointError
 from axis.plots.figure import Figure, Scale, as_csv
 from axis.plots.screen import to_plotly
 from axis.plots.tail import tail
-from axis.screens import look
+from axis.screens import desk, look
 from axis.settling.check import tail_trace
 from axis.settling.verdict import MoveVerdict
 from axis.sheet.shown import declared
 from axis.study import Study
 from axis.units import Quantity, in_shown, parse
 
+BEFORE = "worst corner before the last change"
 
-@st.cache_resource(show_spinner=False, max_entries=32, hash_funcs={Study: id, MoveVerdict: id})
+
 def _figure(study: Study, move: MoveVerdict) -> Figure:
-    loops = study.document.axis.loops
-    assert loops is not None
-    nominal = tail_trace(study.axis, loops, {})
-    return tail(study.axis, move, nominal, tail_trace(study.axis, loops, move.worst_corner))
+    """The tail of a move, drawn once, and over it that of the axis before the last change."""
+    known = desk.results()
+    if move.number not in known.figures:
+        loops = study.document.axis.loops
+        assert loops is not None
+        nominal, worst = tail_trace(study.axis, loops, {}), tail_trace(study.axis, loops, move.worst_corner)
+        known.figures[move.number] = tail(study.axis, move, nominal, worst)
+    figure, before = known.figures[move.number], known.before.get(move.number)
+    if before is None or before.y.unit != figure.y.unit:
+        return figure
+    old = [replace(line, name=BEFORE, meaning="command", stroke="dotted") for line in before.lines[:1]]
+    return replace(figure, lines=(*figure.lines, *old))
 
 
 @st.fragment

@@ -27,7 +27,7 @@ MOST_TOLD = 12
 def show() -> None:
     draft = desk.draft()
     if draft is None:
-        st.html(look.heading("Open an axis", "not evaluated", "Nothing is open in this window."))
+        st.html(look.heading("Open an axis", "not evaluated", "Nothing is open in this window.", "none open"))
         _open()
         return
     found, on_desk = desk.study(), desk.understood()
@@ -36,10 +36,10 @@ def show() -> None:
     name = found.document.axis.head.name if found is not None else draft.name
     if found is not None:
         assumed = len(found.axis.assumptions)
-        sentence = f"Read and completed; {assumed} values were not stated and are assumed. They are hatched below."
-        st.html(look.heading(name, "pass", sentence if assumed else "Read; every value was stated."))
+        sentence = f"{assumed} values were not stated and are assumed; they are hatched below."
+        st.html(look.heading(name, "pass", sentence if assumed else "Every value was stated.", "understood"))
     else:
-        st.html(look.heading(name, "fail", "The axis cannot be computed before what follows is mended."))
+        st.html(look.heading(name, "fail", "It cannot be computed before what follows is mended.", "to mend"))
     if on_desk.failed:
         st.html(look.box(on_desk.failed, kind="wrong", role="alert"))
     if problems:
@@ -100,7 +100,8 @@ def _values(text: str, found: Study | None) -> None:
     if found is not None:
         rows = {row.path: row for group in understood(found) for row in group.rows if row.path}
     rotary = any(field.path == "axis.travel" and field.typed == "rotary" for one in every for field in one.fields)
-    show_sections(chosen, rotary, rows, on_desk.problems)
+    with st.container(key="values", gap="xxsmall"):
+        show_sections(chosen, rotary, rows, on_desk.problems)
     if found is not None and part == next(iter(PARTS)):
         computed = next(group for group in understood(found) if all(row.origin == "computed" for row in group.rows))
         st.html(look.part(computed.title))

@@ -142,15 +142,15 @@ def _moves(study: Study, stale: bool) -> None:
     assert study.settled is not None
     rotary = study.axis.stated.rotary
     for move, verdict in zip(move_rows(study), study.settled.moves, strict=True):
-        st.html(look.part(move.title, f"{move.sentence}; worst {move.worst_corner}"))
-        st.html(look.stale(look.verdict(move.verdict), stale))
+        st.html(look.part(move.title, f"{move.sentence}; worst {move.worst_corner}", move.verdict))
         picture, figures = st.columns([3, 2], gap="medium")
         with picture:
             show_tail(study, verdict, stale)
         with figures:
             rows = [(row.name, row.nominal, row.worst) for row in move.figures]
             st.html(look.stale(look.table(("", "nominal", "worst corner"), rows, numbers=(1, 2)), stale))
-        st.html(look.stale(check_list(move.checks), stale))
+        with st.expander(f"Checks of move {move.number}", expanded=move.verdict != "pass"):
+            st.html(look.stale(check_list(move.checks), stale))
     whole: tuple[Check, ...] = study.settled.checks
     if whole:
         st.html(look.part("The axis as a whole"))

@@ -71,12 +71,14 @@ def _sheet(now: Study, stem: str) -> None:
 
 
 def _before_it_moves(now: Study) -> None:
-    st.html(look.part("Before it moves"))
-    for caution in cautions(now.document.axis):
-        st.html(look.box(f"{caution.text} ({caution.governs})", kind="care"))
+    needed = cautions(now.document.axis)
+    st.html(look.part("Before it moves", "all of these stand on the sheet"))
+    first, *others = (f"{caution.text} ({caution.governs})" for caution in needed)
+    st.html(look.box(first, kind="care"))
+    with st.expander(f"{len(others)} more cautions for this axis"):
+        st.html(look.box("On the way to the machine:", others, "care"))
     with st.expander("What these figures do not say"):
-        for sentence in limit_sentences(now):
-            st.html(look.box(sentence))
+        st.html(look.box("Where the computation ends:", limit_sentences(now)))
 
 
 show()
