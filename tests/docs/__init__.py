@@ -1,0 +1,1 @@
+"""The pages of docs/ hold what they say."""
