@@ -89,28 +89,13 @@ def advance(
     """Advance the state over one segment of `step` [s] from `time` [s] of the move.
 
     One matrix is exact as long as no side starts or stops and the load is too fast for Stribeck friction or has none.
+    That is asked at both ends, with room for the most that a cubic between them can rise above or dip below.
     """
     speed, twist, load, current = x[MOTOR_SPEED], x[TWIST], x[LOAD_SPEED], x[CURRENT]
     motor_sense, load_sense = senses[0], senses[1]
     holding, drag = p[HOLDING], p[MOTOR_DRAG]
     on_motor = drag * motor_sense
     on_load = p[SLIDING] * load_sense + p[PULL]
-    plain = True
-    before = 0.0
-    if holding > 0.0:
-        if load_sense == 0:
-            before = abs(torque_on_load(p, speed, twist, load, current))
-            plain = before <= holding
-        else:
-            plain = load * load_sense > p[FAST]
-    if drag > 0.0 and plain:
-        if motor_sense == 0:
-            plain = abs(torque_on_motor(p, speed, twist, load, current)) <= drag
-        else:
-            plain = speed * motor_sense > 0.0
-    if not plain:
-        by_series(x, senses, p, voltage, step, o, time, rest_offset, c)
-        return
     mode = (2 if drag > 0.0 and motor_sense == 0 else 0) + (1 if holding > 0.0 and load_sense == 0 else 0)
     for row in range(PADDED):
         new[row] = (
@@ -123,23 +108,24 @@ def advance(
             + matrices[segment, mode, 6, row] * on_load
         )
     new_speed, new_twist, new_load, new_current = new[MOTOR_SPEED], new[TWIST], new[LOAD_SPEED], new[CURRENT]
+    plain = True
     if holding > 0.0:
+        before = torque_on_load(p, speed, twist, load, current)
+        after = torque_on_load(p, new_speed, new_twist, new_load, new_current)
         if load_sense == 0:
-            after = abs(torque_on_load(p, new_speed, new_twist, new_load, new_current))
             bulge = BULGE * step * p[SPRING] * max(abs(speed), abs(new_speed))
-            plain = max(before, after) + bulge <= holding
+            plain = max(abs(before), abs(after)) + bulge <= holding
         else:
-            before = torque_on_load(p, speed, twist, load, current) - p[SLIDING] * load_sense
-            after = torque_on_load(p, new_speed, new_twist, new_load, new_current) - p[SLIDING] * load_sense
-            bulge = BULGE * step * max(abs(before), abs(after)) / p[J_LOAD]
+            sliding = p[SLIDING] * load_sense
+            bulge = BULGE * step * max(abs(before - sliding), abs(after - sliding)) / p[J_LOAD]
             plain = min(load * load_sense, new_load * load_sense) - bulge > p[FAST]
     if drag > 0.0 and plain:
+        before = torque_on_motor(p, speed, twist, load, current)
+        after = torque_on_motor(p, new_speed, new_twist, new_load, new_current)
         if motor_sense == 0:
-            plain = abs(torque_on_motor(p, new_speed, new_twist, new_load, new_current)) <= drag
+            plain = max(abs(before), abs(after)) <= drag
         else:
-            before = torque_on_motor(p, speed, twist, load, current) - on_motor
-            after = torque_on_motor(p, new_speed, new_twist, new_load, new_current) - on_motor
-            bulge = BULGE * step * max(abs(before), abs(after)) / p[J_MOTOR]
+            bulge = BULGE * step * max(abs(before - on_motor), abs(after - on_motor)) / p[J_MOTOR]
             plain = min(speed * motor_sense, new_speed * motor_sense) - bulge > 0.0
     if not plain:
         by_series(x, senses, p, voltage, step, o, time, rest_offset, c)

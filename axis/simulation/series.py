@@ -93,6 +93,8 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
     fades = load_sense != 0 and p[FADING_SPEED] > 0.0 and abs(c[LOAD_SPEED, 0]) <= NEARLY * p[FAST]
     per_square = -1.0 / (p[FADING_SPEED] * p[FADING_SPEED]) if fades else 0.0
     rigid = p[RIGID] != 0.0
+    per_motor, per_load, per_henry = 1.0 / p[J_MOTOR], 1.0 / p[J_LOAD], 1.0 / p[HENRYS]
+    of_speed, of_twist, of_load, of_current = 0.0, 0.0, 0.0, 0.0  # largest terms so far
     for n in range(TERMS + 1):
         speed, twist, load, current = c[MOTOR_SPEED, n], c[TWIST, n], c[LOAD_SPEED, n], c[CURRENT, n]
         torque = p[K_TORQUE] * current
@@ -122,21 +124,29 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
             friction += c[FADING, n]
         c[ON_LOAD, n] = on_load
         c[ON_MOTOR, n] = on_motor
-        if n == TERMS or (n >= 3 and converged(c, n)):
+        of_speed, of_twist = max(of_speed, abs(speed)), max(of_twist, abs(twist))
+        of_load, of_current = max(of_load, abs(load)), max(of_current, abs(current))
+        if n == TERMS or (
+            n >= 3
+            and abs(load) + abs(c[LOAD_SPEED, n - 1]) <= ACCURACY * of_load
+            and abs(speed) + abs(c[MOTOR_SPEED, n - 1]) <= ACCURACY * of_speed
+            and abs(twist) + abs(c[TWIST, n - 1]) <= ACCURACY * of_twist
+            and abs(current) + abs(c[CURRENT, n - 1]) <= ACCURACY * of_current
+        ):
             break
         share = step / (n + 1.0)
         c[ANGLE, n + 1] = share * speed
-        c[LOAD_SPEED, n + 1] = 0.0 if load_sense == 0 else share * (on_load - friction) / p[J_LOAD]
+        c[LOAD_SPEED, n + 1] = 0.0 if load_sense == 0 else share * (on_load - friction) * per_load
         if rigid:
             c[MOTOR_SPEED, n + 1] = c[LOAD_SPEED, n + 1]
             c[TWIST, n + 1] = 0.0
         else:
-            c[MOTOR_SPEED, n + 1] = 0.0 if motor_sense == 0 else share * (on_motor - drag) / p[J_MOTOR]
+            c[MOTOR_SPEED, n + 1] = 0.0 if motor_sense == 0 else share * (on_motor - drag) * per_motor
             c[TWIST, n + 1] = share * (speed - load)
         drop = -p[OHMS] * current - p[K_VOLTAGE] * speed
         if n == 0:
             drop += voltage
-        c[CURRENT, n + 1] = share * drop / p[HENRYS]
+        c[CURRENT, n + 1] = share * drop * per_henry
     return n
 
 
@@ -152,7 +162,7 @@ def shorten(c: Array, order: int) -> float:
         change = 0.0
         for n in range(1, order + 1):
             change += abs(c[EXPONENT, n])
-        if change <= 3.0 and converged(c, order):
+        if change <= 3.0 and (order < TERMS or converged(c, order)):
             break
         share *= 0.5
         factor = 1.0
