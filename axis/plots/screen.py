@@ -54,9 +54,17 @@ def to_plotly(figure: Figure, dark: bool = False) -> go.Figure:
         paper_bgcolor=palette.ground,
         plot_bgcolor=palette.ground,
         font={"color": palette.text, "size": 13},
-        legend={"orientation": "h", "yanchor": "top", "y": -0.2, "x": 0.0},
-        xaxis={"title": {"text": figure.x.title}, "range": [figure.x.low, figure.x.high], **ruling},
-        yaxis={"title": {"text": figure.y.title}, "range": [figure.y.low, figure.y.high], **ruling},
+        legend={"orientation": "h", "yanchor": "top", "y": -0.24, "x": 0.0},
+        xaxis={
+            "title": {"text": figure.x.title, "font": {"size": 13}},
+            "range": [figure.x.low, figure.x.high],
+            **ruling,
+        },
+        yaxis={
+            "title": {"text": figure.y.title, "font": {"size": 13}},
+            "range": [figure.y.low, figure.y.high],
+            **ruling,
+        },
         hovermode="x unified",
     )
     return drawn

@@ -143,7 +143,7 @@ def _moves(study: Study, stale: bool) -> None:
     rotary = study.axis.stated.rotary
     for move, verdict in zip(move_rows(study), study.settled.moves, strict=True):
         st.html(look.part(move.title, f"{move.sentence}; worst {move.worst_corner}", move.verdict))
-        picture, figures = st.columns([3, 2], gap="medium")
+        picture, figures = st.columns([5, 4], gap="medium")
         with picture:
             show_tail(study, verdict, stale)
         with figures:
