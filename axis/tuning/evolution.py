@@ -1,6 +1,6 @@
 """Differential evolution on the unit cube: half current-to-best, half random; deterministic by its seed.
 
-Time to window is flat in most directions, with cliffs between: gradients are useless (Storn and Price 1997).
+Time to window is flat in most directions, with cliffs between: gradients are useless. Source: [storn1997].
 """
 
 from __future__ import annotations
