@@ -4,22 +4,21 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from concurrent.futures import Executor
 
 from axis.completion import CompletedAxis
 from axis.description.corners import SHARES
 from axis.description.settings import Loops
 from axis.loops.margins import Margins, margins, margins_hold
 from axis.loops.sampled import SampledPlant, sample_plant
-from axis.settling.check import check
+from axis.settling.verdict import Settled
 from axis.tuning.objective import margin_corners
 from axis.tuning.result import Reference
 
 
-def reference(axis: CompletedAxis, loops: Loops, executor: Executor) -> Reference:
-    """Verify settings: exact margins at the extreme plants, simulation at every corner."""
+def judged(axis: CompletedAxis, loops: Loops, settled: Settled) -> Reference:
+    """Settings and their verdict, with the margins."""
     found, corner = smallest_margins(axis, loops)
-    return Reference(loops, found, corner, check(axis, loops, None, executor))
+    return Reference(loops, found, corner, settled)
 
 
 def smallest_margins(axis: CompletedAxis, loops: Loops) -> tuple[Margins, Mapping[str, float]]:

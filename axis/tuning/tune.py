@@ -20,7 +20,7 @@ from axis.settling.check import check
 from axis.sizing.bound import bounds
 from axis.tuning.evolution import Population, generations
 from axis.tuning.objective import VIOLATION_SCORE, Corner, Objective, extreme_plants, margin_corners
-from axis.tuning.reference import margins_everywhere, reference
+from axis.tuning.reference import judged, margins_everywhere
 from axis.tuning.result import Reference, Step, Tuned
 from axis.tuning.start import WIDEST_BAND, bare_loops, own_band
 from axis.tuning.variables import Space, rounded, space
@@ -80,9 +80,10 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     holds = margins_everywhere(axis, result.loops)
     path.append(_as_step(f"searched{stopped}: {search.runs} simulated cycles, seed {seed}", axis, result))
     bound, machine_bound = bounds(axis, dict(result.settled.moves[0].worst_corner))
+    textbook = _textbook(axis, result.loops, search)
     return Tuned(
         result=result,
-        textbook=reference(axis, _textbook(axis, result.loops, search), executor),
+        textbook=judged(axis, textbook, check(axis, textbook, None, executor)),
         path=tuple(path),
         bound=bound,
         machine_bound=machine_bound,
@@ -90,7 +91,7 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
         runs=search.runs,
         margins_hold=holds,
         searched=result.loops != designed,
-        reason="" if holds and result.settled.verdict == "pass" else NOTHING_FOUND,
+        reason="" if holds and result.settled.verdict != "fail" else NOTHING_FOUND,
     )
 
 
@@ -181,10 +182,13 @@ def _look(loops: Loops, everywhere: Objective, executor: Executor) -> _Look:
 def _verified(axis: CompletedAxis, looks: list[_Look], executor: Executor) -> Reference:
     """The best look that passes in full, its cycle repeated until it repeats itself; else the best look."""
     ranked = sorted(looks, key=lambda look: look.score)
+    tried = []
     for look in ranked[:VERIFIED]:
-        if look.score < VIOLATION_SCORE and check(axis, look.loops, None, executor).verdict == "pass":
-            return reference(axis, look.loops, executor)
-    return reference(axis, ranked[0].loops, executor)
+        settled = check(axis, look.loops, None, executor)
+        if settled.verdict != "fail":
+            return judged(axis, look.loops, settled)
+        tried.append(settled)
+    return judged(axis, ranked[0].loops, tried[0])
 
 
 def _in_words(score: float, corners: int) -> str:
