@@ -107,12 +107,18 @@ class Results:
                 self.settle(found)
 
         running = self.checking
-        if running is not None and running.study.document.axis == study.document.axis:
-            return  # under way, or ended without a result for this very axis: told, not tried for ever
+        same = running is not None and running.study.document.axis == study.document.axis
+        if running is not None and same and (running.failed or not running.ended):
+            return  # under way, or without a result for this very axis: that is told, not tried for ever
         if running is not None:
             running.stop()
         self.checking = Job("check", study)
         self.checking.start(work)
+
+    def check_again(self, study: Study) -> None:
+        """Try once more what ended without a result."""
+        self.checking = None
+        self.start_checking(study)
 
     def stop(self) -> None:
         for job in (self.tuning, self.checking):

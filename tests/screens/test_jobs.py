@@ -97,6 +97,20 @@ def test_a_check_of_another_axis_stops_the_one_before(monkeypatch: pytest.Monkey
     known.stop()
 
 
+def test_an_axis_that_comes_back_is_checked_again(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(jobs, "check", lambda study, progress: study)
+    sample, known = study(), Results()
+    known.start_checking(sample)
+    assert known.checking is not None
+    first = ended(known.checking)
+    assert known.settled is sample
+    known.settle(replace(sample, document=replace(sample.document, axis=replace(sample.document.axis, loops=None))))
+    known.start_checking(sample)
+    assert known.checking is not first
+    ended(known.checking)
+    assert known.is_settled(sample.document.axis)
+
+
 def test_a_copied_draft_takes_its_results_along_and_old_drafts_are_let_go() -> None:
     board = Board()
     board.of("old").settled = study()

@@ -155,8 +155,28 @@ def test_results_of_an_earlier_input_are_grey_and_say_so(no_simulation: None, mo
     assert window.results.checking is not None, "what is quick follows the edit by itself"
     window.press("stop check")
     assert window.results.checking.stopping
+    for thread in threading.enumerate():
+        if thread.name == "check":
+            thread.join(WAIT)
+    stopped = window.run().results.checking
+    assert "The check gave no result: stopped" in window.words
+    window.press("again check")
+    assert window.results.checking is not stopped, "what was stopped can be started again"
+    window.results.stop()
     window.page("describe").type("load.mass", "83.8 lb").page("settling")
     assert "sp-stale" not in window.html, "the input that was computed is back"
+
+
+def test_the_tail_before_a_change_stays_in_the_picture(no_simulation: None) -> None:
+    window = settled_window().page("settling")
+    name = "worst corner before the last change"
+    assert name not in window.at.get("plotly_chart")[0].proto.spec
+    window.page("describe").type("load.mass", "90 lb")
+    axis = read_text(window.draft.text).axis
+    window.results.settle(replace(study(), document=replace(study().document, axis=axis)))
+    window.page("settling")
+    assert "sp-stale" not in window.html
+    assert name in window.at.get("plotly_chart")[0].proto.spec
 
 
 def test_a_search_shows_its_progress_is_stopped_and_gives_its_settings_to_the_axis(
@@ -230,6 +250,9 @@ def test_the_sheet_taken_along_is_the_command_lines_byte_for_byte(
     tmp_path: Path, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     text = ONE_CORNER + WITH_LOOPS[WITH_LOOPS.index("[loops]") :]
+    text = text.replace('"1.9 N*m*s/rad"', '"0.35 N*m*s/rad"').replace(
+        '"85 1/s"', '"60 1/s"'
+    )  # gains that come to rest
     window = Window.on(text).page("settling")
     for thread in threading.enumerate():
         if thread.name == "check":

@@ -9,12 +9,12 @@ from axis.screens import desk, look
 from axis.screens.checks import check_list, nothing_open
 from axis.screens.jobs import Job, without_loops
 from axis.screens.tails import show_tail
+from axis.screens.watch import watch
 from axis.sheet.rows import check_rows, comparison_rows, headline, margin_rows, move_rows, path_rows
 from axis.sheet.settings import setting_rows
 from axis.study import DEFAULT_RUNS, DEFAULT_SEED, Study
 from axis.verdicts import Check
 
-WATCH_EVERY = 0.4  # [s]
 LEAST_RUNS, MOST_RUNS, LONGEST_NUMBER = 100, 1_000_000, 11
 TITLE = "Does it settle?"
 AT_THE_ENABLE = (SUSPENDED, FIRST_ENABLE, DC_LINK)
@@ -34,7 +34,7 @@ def show() -> None:
     stale = shown is not now
     if now is None:
         st.html(look.box("The axis has to be mended first:", map(str, on_desk.problems), "wrong", "alert"))
-    _watch(known.checking if now is not None and now.settled is None and loops is not None else None)
+    watch(known.checking if now is not None and now.settled is None and loops is not None else None, now)
     _search(now)
     if shown is None or shown.settled is None:
         if now is not None and loops is not None:
@@ -54,38 +54,16 @@ def _running(job: Job | None) -> bool:
     return job is not None and not job.ended
 
 
-def _watch(job: Job | None) -> None:
-    """Draw a job until it ends; then the whole page is drawn again."""
-    if job is None:
-        return
-    if job.ended:
-        if job.failed:
-            st.html(look.box(f"The {job.name} gave no result: {job.failed}", kind="wrong", role="alert"))
-        return
-    _progress(job)
-
-
-@st.fragment(run_every=WATCH_EVERY)
-def _progress(job: Job) -> None:
-    if job.ended:
-        st.rerun(scope="app")
-    bar, stop = st.columns([6, 1], vertical_alignment="bottom")
-    with bar:
-        st.progress(job.share, text=f"{job.name.capitalize()}: {job.best}")
-    with stop:
-        st.button("Stop", key=f"stop {job.name}", on_click=job.stop, disabled=job.stopping, width="stretch")
-
-
 def _search(now: Study | None) -> None:
     """The search for settings: its button, its progress, and what it found."""
     known = desk.results()
     job = known.tuning
     if _running(job):
-        _watch(job)
+        watch(job)
         if job is not None and (now is None or not _same(job, now)):
             st.html(look.box("The search runs on the axis as it was when you started it.", kind="care"))
         return
-    _watch(job)
+    watch(job)
     if now is None:
         return
     has_loops = now.document.axis.loops is not None

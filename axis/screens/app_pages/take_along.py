@@ -9,6 +9,7 @@ import streamlit as st
 from axis.cautions import cautions
 from axis.screens import desk, look
 from axis.screens.checks import nothing_open
+from axis.screens.watch import watch
 from axis.sheet.render import render
 from axis.sheet.rows import PRELIMINARY, headline, limit_sentences
 from axis.study import Study
@@ -56,7 +57,11 @@ def _sheet(now: Study, stem: str) -> None:
     if now.document.axis.loops is not None and now.settled is None:
         sentence = "The settling of this axis has not been computed since its last change. The sheet would say so."
         st.html(look.box(sentence, kind="care"))
-        st.button("Compute it now", on_click=desk.results().start_checking, args=(now,), key="check now")
+        known = desk.results()
+        if known.checking is None or known.checking.study.document.axis != now.document.axis:
+            st.button("Compute it now", on_click=known.start_checking, args=(now,), key="check now")
+        else:
+            watch(known.checking, now)
     date = st.text_input("Date to print on it (left out: none)", key="date", persist_state="session").strip()
     if len(date) > LONGEST_DATE or not date.isprintable():
         sentence = f"The date must be one line of at most {LONGEST_DATE} characters."
