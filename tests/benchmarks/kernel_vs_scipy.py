@@ -1,0 +1,64 @@
+"""The compiled kernel against scipy's solvers called between samples: `python -m tests.benchmarks.kernel_vs_scipy`.
+
+Friction, quantiser and limits are on, one core. The untimed reference locates every stop and start at rtol 1e-12. Each
+of scipy's solvers then runs at the loosest tolerance that keeps its record within 1e-3 of the window of that
+reference; the fastest of them is the baseline. The kernel's record is held to the same bar.
+"""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Callable
+
+import numpy as np
+
+from axis.simulation.run import run, trace
+from tests.simulation.axes import LIMITS, WINDOW, move, scenario
+from tests.simulation.reference import simulate
+
+ASKED = scenario(move(0.01, 0.06, 0.04), limits=LIMITS)
+BAR = 1e-3  # of the window
+METHODS = ("RK45", "DOP853", "LSODA")
+TOLERANCES = (1e-1, 1e-2, 1e-3, 1e-4, 1e-5, 1e-6, 1e-8, 1e-10)
+
+
+def best_of(repeats: int, call: Callable[[], object]) -> float:
+    """Shortest time [s]."""
+    shortest = np.inf
+    for _ in range(repeats):
+        start = time.perf_counter()
+        call()
+        shortest = min(shortest, time.perf_counter() - start)
+    return shortest
+
+
+def main() -> None:
+    truth = simulate(ASKED, rtol=1e-12, max_step=2e-5).array()[:, 3] / ASKED.ratio
+
+    def error(load: np.ndarray) -> float:
+        return float(np.abs(load - truth).max() / WINDOW)
+
+    print(f"record of {len(truth)} current samples, window {WINDOW * 1e6:.0f} um, bar {BAR:g} of it")
+    baseline = np.inf
+    for method in METHODS:
+        for tolerance in TOLERANCES:
+
+            def call(method: str = method, tolerance: float = tolerance) -> np.ndarray:
+                return simulate(ASKED, method=method, rtol=tolerance, max_step=np.inf).array()
+
+            off = error(call()[:, 3] / ASKED.ratio)
+            if off <= BAR:
+                taken = best_of(3, call)
+                baseline = min(baseline, taken)
+                print(f"{method:7s} rtol {tolerance:.0e}: {taken * 1e3:9.2f} ms, error {off:.1e} of the window")
+                break
+            print(f"{method:7s} rtol {tolerance:.0e}: error {off:.1e} of the window, too loose")
+    _, record = trace(ASKED, 1)
+    kernel = best_of(200, lambda: run(ASKED, 1))
+    off = error(record.load_position)
+    print(f"kernel               : {kernel * 1e3:9.3f} ms, error {off:.1e} of the window")
+    print(f"ratio {baseline / kernel:.0f} (asked: at least 1000); kernel within the bar: {off <= BAR}")
+
+
+if __name__ == "__main__":
+    main()
