@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import signal
 import socket
 import subprocess
 import sys
@@ -60,6 +61,7 @@ def launch(port: int | None = None, open_browser: bool = True) -> int:
     """Serve the screens until they are stopped; returns the server's exit code."""
     chosen = free_port(port)
     address = f"http://{HOST}:{chosen}"
+    ended = signal.signal(signal.SIGTERM, _end)  # without it the server would outlive whoever started it
     server = subprocess.Popen(command(chosen), stdout=subprocess.DEVNULL, env=environment())
     try:
         if answers(server, chosen):
@@ -68,12 +70,17 @@ def launch(port: int | None = None, open_browser: bool = True) -> int:
                 webbrowser.open(address)
         return server.wait()
     finally:
+        signal.signal(signal.SIGTERM, ended)
         if server.poll() is None:
             server.terminate()
             try:
                 server.wait(10.0)
             except subprocess.TimeoutExpired:
                 server.kill()
+
+
+def _end(*_: object) -> None:
+    raise SystemExit(128 + signal.SIGTERM)
 
 
 def answers(server: subprocess.Popen[bytes], port: int) -> bool:

@@ -1,5 +1,8 @@
 """The frame: verdicts in the navigation, settings of the server, starting, and pages that raise."""
 
+import signal
+import socket
+import subprocess
 import sys
 import tomllib
 
@@ -95,13 +98,24 @@ def test_both_start_files_do_the_same() -> None:
 
 
 def test_a_port_in_use_is_told() -> None:
-    import socket
-
     with socket.socket() as taken:
         taken.bind((HOST, 0))
         taken.listen()
         with pytest.raises(CannotWrite, match="in use"):
             free_port(taken.getsockname()[1])
+
+
+def test_the_server_ends_with_the_command_that_started_it() -> None:
+    port = free_port(None)
+    call = [sys.executable, "-m", "axis", "app", "--no-browser", "--port", str(port)]
+    started = subprocess.Popen(call, cwd=ROOT, stdout=subprocess.PIPE, stderr=subprocess.DEVNULL, text=True)
+    assert started.stdout is not None
+    with started.stdout as out:
+        assert f"http://{HOST}:{port}, on this machine only" in out.readline()
+    started.terminate()
+    assert started.wait(60.0) == 128 + signal.SIGTERM
+    with pytest.raises(OSError, match="refused"), socket.create_connection((HOST, port), timeout=5.0):
+        pass
 
 
 def test_a_server_that_ends_at_once_is_no_server(monkeypatch: pytest.MonkeyPatch) -> None:
