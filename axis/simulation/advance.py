@@ -40,7 +40,15 @@ EVENTS = 64  # stops and starts looked for in one segment; a real axis shows a h
 def by_series(
     x: Array, senses: Whole, p: Array, voltage: float, step: float, o: Array, time: float, rest_offset: float, c: Array
 ) -> None:
-    """Advance through reversals, sticking, breaking away and Stribeck friction; the observer sees every piece."""
+    """Advance through reversals, sticking, breaking away and Stribeck friction; the observer sees every piece.
+
+    Parameters
+        voltage [V]: held over the step
+        step [s]: length
+        time [s]: from the first sample of the move
+        rest_offset [rad]: twist at the rest from which positions count
+    Source: [own]
+    """
     done = 0.0
     pieces = 0
     while done < step:
@@ -56,7 +64,17 @@ def by_series(
 
 @compiled_part
 def torque_on_load(p: Array, speed: float, twist: float, load: float, current: float) -> float:
-    """Torque on the load without its Coulomb friction."""
+    """Torque on the load without its Coulomb friction.
+
+    Parameters
+        speed [rad/s]: of the motor
+        twist [rad]: motor angle less load angle
+        load [rad/s]: speed of the load
+        current [A]: q-axis peak
+    Returns [N·m]
+    k·δ + d·(ω_m − ω_l) − B·ω_l − T_load; Kt·i in place of the spring where the axis is rigid
+    Source: [own]
+    """
     driving: float = p[SPRING] * twist + p[DASHPOT] * (speed - load)
     if p[RIGID] != 0.0:
         driving = p[K_TORQUE] * current
@@ -66,7 +84,17 @@ def torque_on_load(p: Array, speed: float, twist: float, load: float, current: f
 
 @compiled_part
 def torque_on_motor(p: Array, speed: float, twist: float, load: float, current: float) -> float:
-    """Torque on the motor without its Coulomb friction; never asked of a rigid axis."""
+    """Torque on the motor without its Coulomb friction; never asked of a rigid axis.
+
+    Parameters
+        speed [rad/s]: of the motor
+        twist [rad]: motor angle less load angle
+        load [rad/s]: speed of the load
+        current [A]: q-axis peak
+    Returns [N·m]
+    Kt·i − k·δ − d·(ω_m − ω_l)
+    Source: [own]
+    """
     result: float = p[K_TORQUE] * current - p[SPRING] * twist - p[DASHPOT] * (speed - load)
     return result
 
@@ -90,6 +118,13 @@ def advance(
 
     One matrix is exact as long as no side starts or stops and the load is too fast for Stribeck friction or has none.
     That is asked at both ends, with room for the most that a cubic between them can rise above or dip below.
+
+    Parameters
+        voltage [V]: held over the step
+        step [s]: length
+        time [s]: from the first sample of the move
+        rest_offset [rad]: twist at the rest from which positions count
+    Source: [own]
     """
     speed, twist, load, current = x[MOTOR_SPEED], x[TWIST], x[LOAD_SPEED], x[CURRENT]
     motor_sense, load_sense = senses[0], senses[1]

@@ -74,13 +74,26 @@ def measured(angle: float, count: float) -> float:
 
 @compiled_part
 def position_sample(u: Array, gains: Array, angle: float) -> None:
-    """Speed command from the position error; the set-point stands already in the drive."""
+    """Speed command from the position error; the set-point stands already in the drive.
+
+    Parameters
+        angle [rad]: measured
+    ω_p = Kv·(r − θ)
+    Source: [own]
+    """
     u[SPEED_COMMAND] = gains[POSITION_GAIN] * (u[SET_POSITION] - angle)
 
 
 @compiled_part
 def filtered_torque(u: Array, gains: Array, torque: float) -> float:
-    """The torque behind all filters, each in transposed direct form."""
+    """The torque behind all filters, each in transposed direct form.
+
+    Parameters
+        torque [N·m]: asked
+    Returns [N·m]
+    y = b0·u + s1; s1 = b1·u − a1·y + s2; s2 = b2·u − a2·y
+    Source: [own]
+    """
     for n in range(int(gains[FILTER_COUNT])):
         f, m = FILTERS + 5 * n, MEMORY + 2 * n
         result = gains[f] * torque + u[m]
@@ -92,7 +105,13 @@ def filtered_torque(u: Array, gains: Array, torque: float) -> float:
 
 @compiled_part
 def velocity_sample(u: Array, gains: Array, frame: Array, limits: Array, angle: float) -> bool:
-    """Current command from speed error, feedforward, filters and current limit; True while limited."""
+    """Current command from speed error, feedforward, filters and current limit; True while limited.
+
+    Parameters
+        angle [rad]: measured
+    Kp·(b·ω_p + f·ṙ − ω) + x + g·J·r̈, x += Kp·a·Tv·(ω_p + f·ṙ − ω), taken back where it pushes into the limit
+    Source: [own]
+    """
     raw = (angle - u[LAST_ANGLE]) / (frame[CURRENT_PERIOD] * frame[VELOCITY_EVERY])
     u[LAST_ANGLE] = angle
     u[FILTERED_SPEED] += gains[VELOCITY_FILTER] * (raw - u[FILTERED_SPEED])
@@ -116,7 +135,14 @@ def velocity_sample(u: Array, gains: Array, frame: Array, limits: Array, angle: 
 
 @compiled_part
 def current_sample(u: Array, gains: Array, limits: Array, p: Array, speed: float, current: float) -> bool:
-    """Voltage from current error, within the voltage circle at zero d-axis current; True while limited."""
+    """Voltage from current error, within the voltage circle at zero d-axis current; True while limited.
+
+    Parameters
+        speed [rad/s]: of the motor
+        current [A]: q-axis peak
+    kp·e + x, x += kp·Tc/ti·e; |v| ≤ √(V² − (p·ω·L·i)²)
+    Source: [own]
+    """
     error = u[COMMAND] - current
     increment = gains[CURRENT_STEP] * error
     u[VOLTAGE_INTEGRAL] += increment
@@ -134,7 +160,13 @@ def current_sample(u: Array, gains: Array, limits: Array, p: Array, speed: float
 
 @compiled_part
 def fill_bucket(u: Array, limits: Array, current: float, period: float) -> None:
-    """Count the current-time bucket; once full it allows the continuous current until a tenth has drained."""
+    """Count the current-time bucket; once full it allows the continuous current until a tenth has drained.
+
+    Parameters
+        current [A]: q-axis peak
+        period [s]: of the current samples
+    Source: [own]
+    """
     capacity = limits[BUCKET_CAPACITY]
     u[BUCKET] = fill(u[BUCKET], current, limits[CONTINUOUS_CURRENT], period)
     if u[BUCKET] >= capacity:

@@ -12,7 +12,6 @@ from axis.motion.pieces import evaluate_piece
 from axis.simulation.advance import advance
 from axis.simulation.controller import (
     BUCKET,
-    COMMAND,
     DRIVE_SIZE,
     SET_ACCELERATION,
     SET_POSITION,
@@ -26,6 +25,7 @@ from axis.simulation.controller import (
     position_sample,
     velocity_sample,
 )
+from axis.simulation.figures import clear, conclude, diverge, keep_worst, signal, write_trace
 from axis.simulation.layout import (
     BUCKET_PEAK,
     COMPUTATION_DELAY,
@@ -38,45 +38,25 @@ from axis.simulation.layout import (
     DURATION,
     FIGURES_SIZE,
     FOLLOWING_ERROR,
-    OVERSHOOT,
     PEAK_CURRENT_SEEN,
     PEAK_SPEED,
-    PEAK_TORQUE,
     PERIODS,
     POSITION_EVERY,
-    REST_ERROR,
-    SIGNAL,
-    SIGNAL_EARLY,
-    SIGNAL_LAST,
-    SIGNAL_LOSSES,
     START,
     TARGET,
-    TIME_TO_WINDOW,
-    TRACE_COMMAND,
-    TRACE_CURRENT,
-    TRACE_LOAD_POSITION,
-    TRACE_LOAD_SPEED,
-    TRACE_MOTOR_ANGLE,
-    TRACE_MOTOR_SPEED,
-    TRACE_SETPOINT,
-    TRACE_TIME,
-    TRACE_TWIST,
-    TRACE_VOLTAGE,
     TRIPPED,
-    UNDERSHOOT,
     VELOCITY_EVERY,
     VOLTAGE_SATURATED,
     WINDOW,
     WINDOW_SAMPLES,
 )
-from axis.simulation.observer import AIM, BAND, BEYOND, INSIDE, LAST_OUTSIDE, OBSERVER_SIZE, SENSE, SHORT
+from axis.simulation.observer import AIM, BAND, INSIDE, OBSERVER_SIZE, SENSE
 from axis.simulation.plant import (
     ANGLE,
     COLUMNS,
     CURRENT,
     HOLDING,
     K_TORQUE,
-    LOAD_SPEED,
     MODES,
     MOTOR_DRAG,
     MOTOR_SPEED,
@@ -104,7 +84,14 @@ KEPT = 5  # cycles whose worst counts where no two agree
 
 @compiled_part
 def set_point(pieces: Array, first: int, last: int, time: float, u: Array, start: float, target: float) -> None:
-    """Put the set-point at `time` [s] of a move into the drive: exact on its cubic, at rest afterwards."""
+    """Put the set-point at `time` [s] of a move into the drive: exact on its cubic, at rest afterwards.
+
+    Parameters
+        time [s]: from the first sample of the move
+        start [rad]: of the move
+        target [rad]: of the move
+    Source: [own]
+    """
     since = time
     for n in range(first, last):
         if since < pieces[n, 0]:
@@ -117,60 +104,6 @@ def set_point(pieces: Array, first: int, last: int, time: float, u: Array, start
     u[SET_POSITION] = target
     u[SET_SPEED] = 0.0
     u[SET_ACCELERATION] = 0.0
-
-
-@compiled_part
-def clear(figures: Array) -> None:
-    """No move has been seen yet."""
-    for f in range(FIGURES_SIZE):
-        figures[f] = 0.0
-    figures[SIGNAL] = math.inf
-    figures[SIGNAL_LAST] = math.inf
-
-
-@compiled_part
-def signal(figures: Array, o: Array, inside: bool, needed: float, time: float) -> None:
-    """The drive's in-position signal at one position sample: it stands once `needed` periods were spent inside."""
-    if not inside:
-        if o[INSIDE] >= needed:
-            figures[SIGNAL_LOSSES] += 1.0
-        o[INSIDE] = -1.0
-        return
-    o[INSIDE] += 1.0
-    if o[INSIDE] == needed:
-        if math.isinf(figures[SIGNAL]):
-            figures[SIGNAL] = time
-        figures[SIGNAL_LAST] = time
-
-
-@compiled_part
-def conclude(figures: Array, o: Array, y: float, constant: float) -> None:
-    """Take over what the observer kept, at the end of the dwell."""
-    outside = abs(y - o[AIM]) > o[BAND]
-    figures[TIME_TO_WINDOW] = math.inf if outside else o[LAST_OUTSIDE]
-    figures[OVERSHOOT] = o[BEYOND]
-    figures[UNDERSHOOT] = o[SHORT]
-    figures[REST_ERROR] = y - o[AIM]
-    figures[PEAK_TORQUE] = constant * figures[PEAK_CURRENT_SEEN]
-    if math.isinf(figures[SIGNAL]):
-        figures[SIGNAL_EARLY] = -math.inf
-    else:
-        figures[SIGNAL_EARLY] = figures[TIME_TO_WINDOW] - figures[SIGNAL]
-
-
-@compiled_part
-def write_trace(trace: Array, row: int, time: float, setpoint: float, x: Array, u: Array, rest_offset: float) -> None:
-    """One row of the trace."""
-    trace[row, TRACE_TIME] = time
-    trace[row, TRACE_SETPOINT] = setpoint
-    trace[row, TRACE_MOTOR_ANGLE] = x[ANGLE]
-    trace[row, TRACE_MOTOR_SPEED] = x[MOTOR_SPEED]
-    trace[row, TRACE_TWIST] = x[TWIST]
-    trace[row, TRACE_LOAD_SPEED] = x[LOAD_SPEED]
-    trace[row, TRACE_CURRENT] = x[CURRENT]
-    trace[row, TRACE_VOLTAGE] = u[VOLTAGE]
-    trace[row, TRACE_COMMAND] = u[COMMAND]
-    trace[row, TRACE_LOAD_POSITION] = x[ANGLE] - x[TWIST] + rest_offset
 
 
 @compiled_part
@@ -197,7 +130,14 @@ def run_move(
     c: Array,
     new: Array,
 ) -> float:
-    """Run one move with its dwell; returns how far [rad] the load is from the record, which it replaces."""
+    """Run one move with its dwell; returns how far [rad] the load is from the record, which it replaces.
+
+    Parameters
+        base [rad]: where this cycle began
+        rest_offset [rad]: twist at the rest from which positions count
+    Returns [rad]
+    Source: [own]
+    """
     period = frame[CURRENT_PERIOD]
     velocity_every, position_every = int(frame[VELOCITY_EVERY]), int(frame[POSITION_EVERY])
     wait = frame[COMPUTATION_DELAY]
@@ -262,27 +202,6 @@ def run_move(
     figures[CURRENT_RIPPLE] = max(high - low, 0.0)
     conclude(figures, o, x[ANGLE] - x[TWIST] + rest_offset, p[K_TORQUE])
     return difference
-
-
-@compiled_part
-def diverge(figures: Array) -> None:
-    """An unstable loop has no figures."""
-    for m in range(figures.shape[0]):
-        for f in range(FIGURES_SIZE):
-            figures[m, f] = math.inf
-
-
-@compiled_part
-def keep_worst(kept: Array, first: int, last: int, figures: Array) -> None:
-    """The worst of the kept cycles, figure by figure; of rest errors the larger in size, of signals the latest."""
-    for m in range(figures.shape[0]):
-        for f in range(FIGURES_SIZE):
-            worst = kept[first, m, f]
-            for n in range(first + 1, last):
-                other = kept[n, m, f]
-                if (abs(other) > abs(worst)) if f == REST_ERROR else (other > worst):
-                    worst = other
-            figures[m, f] = worst
 
 
 @compiled

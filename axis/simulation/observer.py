@@ -94,7 +94,17 @@ def crossing(level: float, inside: float, e0: float, d0: float, e1: float, d1: f
 
 @compiled_part
 def observe(o: Array, time: float, step: float, y0: float, v0: float, y1: float, v1: float) -> None:
-    """Take note of one exact step of the load: position [rad] and speed [rad/s] at its ends."""
+    """Take note of one exact step of the load: position [rad] and speed [rad/s] at its ends.
+
+    Parameters
+        time [s]: from the first sample of the move
+        step [s]: length
+        y0 [rad]: position at its start
+        v0 [rad/s]: speed there
+        y1 [rad]: position at its end
+        v1 [rad/s]: speed there
+    Source: [own]
+    """
     e0, e1 = (y0 - o[AIM]) * o[SENSE], (y1 - o[AIM]) * o[SENSE]
     band = o[BAND]
     highest = max(e0, e1)

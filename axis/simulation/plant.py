@@ -125,6 +125,11 @@ def transitions(p: Array, first_time: float, second_time: float, result: Array) 
     """Exact transition of the state over both segments of a current period in all modes.
 
     Row ANGLE gives the increment of the motor angle. Inputs are held over the segment.
+
+    Parameters
+        first_time [s]: until the new voltage acts
+        second_time [s]: from there to the next sample
+    Source: [own]
     """
     matrix = np.empty((ORDER, ORDER))
     once = np.empty((ORDER, ORDER))

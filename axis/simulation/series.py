@@ -55,7 +55,13 @@ EXPONENT, FADING, ON_MOTOR, ON_LOAD, SERIES_ROWS = range(5, 10)
 
 @compiled_part
 def value(c: Array, row: int, order: int, s: float) -> float:
-    """The polynomial of a row at a share s of the step."""
+    """The polynomial of a row at a share s of the step.
+
+    Parameters
+        s [1]: share of the step
+    Returns [1], in the unit of the row
+    Source: [own]
+    """
     result: float = c[row, order]
     for n in range(order - 1, -1, -1):
         result = result * s + c[row, n]
@@ -64,7 +70,13 @@ def value(c: Array, row: int, order: int, s: float) -> float:
 
 @compiled_part
 def slope_from_rest(c: Array, row: int, order: int, s: float) -> float:
-    """The polynomial of a row that starts at zero, divided by s: its sign away from the start."""
+    """The polynomial of a row that starts at zero, divided by s: its sign away from the start.
+
+    Parameters
+        s [1]: share of the step
+    Returns [1], in the unit of the row
+    Source: [own]
+    """
     result: float = c[row, order]
     for n in range(order - 1, 0, -1):
         result = result * s + c[row, n]
@@ -89,6 +101,11 @@ def expand(c: Array, p: Array, motor_sense: int, load_sense: int, voltage: float
 
     The fading part of the friction, F = (F_S − F_C)·exp(u) with u = −(ω/ω_S)², follows from n·Fₙ = Σ k·u_k·Fₙ₋ₖ, which
     is the derivative F' = u'·F term by term.
+
+    Parameters
+        voltage [V]: held over the step
+        step [s]: length
+    Source: [own]
     """
     fades = load_sense != 0 and p[FADING_SPEED] > 0.0 and abs(c[LOAD_SPEED, 0]) <= NEARLY * p[FAST]
     per_square = -1.0 / (p[FADING_SPEED] * p[FADING_SPEED]) if fades else 0.0
@@ -175,7 +192,13 @@ def shorten(c: Array, order: int) -> float:
 
 @compiled_part
 def slows_at(c: Array, row: int, order: int, sense: int, level: float) -> float:
-    """Share of the step at which a moving side comes down to a speed, zero for a stop; above 1: not in this step."""
+    """Share of the step at which a moving side comes down to a speed, zero for a stop; above 1: not in this step.
+
+    Parameters
+        level [rad/s]: speed looked for
+    Returns [1]
+    Source: [own]
+    """
     reach = 0.0
     for n in range(1, order + 1):
         reach += abs(c[row, n])
@@ -204,7 +227,13 @@ def slows_at(c: Array, row: int, order: int, sense: int, level: float) -> float:
 
 @compiled_part
 def starts_at(c: Array, row: int, order: int, holding: float) -> float:
-    """Share of the step at which the torque on a resting side exceeds what holds it; above 1: not in this step."""
+    """Share of the step at which the torque on a resting side exceeds what holds it; above 1: not in this step.
+
+    Parameters
+        holding [N·m]: what friction holds
+    Returns [1]
+    Source: [own]
+    """
     reach = 0.0
     for n in range(order + 1):
         reach += abs(c[row, n])
