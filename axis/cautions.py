@@ -36,8 +36,8 @@ CRUSHING = Caution(
 HOT = Caution("Motor and braking resistor can be hot enough to burn.", "ISO 13732-1 (guidance)")
 SUSPENDED = Caution(
     "The load is pulled down by gravity. Safe torque off removes the torque and does not hold the load: stopping, "
-    "brake control and brake test are set by the risk assessment. A holding brake is no service brake. Support the load "
-    "mechanically before tuning; preload the torque before the brake opens.",
+    "brake control and brake test are set by the risk assessment. A holding brake is no service brake. Support the "
+    "load mechanically before tuning; preload the torque before the brake opens.",
     "ISO 12100, ISO 13849-1, IEC 61800-5-2",
 )
 

@@ -134,7 +134,9 @@ def _rule_check(axis: CompletedAxis, rule: Rule, n: int, at: list[tuple[Mapping[
     if rule.limit is None:
         return Check(identity, name, "not evaluated", SOURCE, reason=f"{rule.missing} is not stated")
     passes = demand <= rule.limit
-    margin = min((rule.limit - demand) / rule.limit, 1.0) if rule.limit > 0 and math.isfinite(demand) else None
+    margin = None
+    if rule.limit > 0.0 and math.isfinite(demand):
+        margin = min(round((rule.limit - demand) / rule.limit, 6), 1.0)
     return Check(
         identity,
         name,

@@ -36,7 +36,8 @@ def show() -> None:
     name = found.document.axis.head.name if found is not None else draft.name
     if found is not None:
         assumed = len(found.axis.assumptions)
-        sentence = f"{assumed} values were not stated and are assumed; they are hatched below."
+        sentence = "One value was" if assumed == 1 else f"{assumed} values were"
+        sentence += " not stated but assumed, and hatched below."
         st.html(look.heading(name, "pass", sentence if assumed else "Every value was stated.", "understood"))
     else:
         st.html(look.heading(name, "fail", "It cannot be computed before what follows is mended.", "to mend"))
