@@ -201,7 +201,14 @@ def extreme_plants(axis: CompletedAxis) -> list[ShaftPlant]:
 
 
 def margin_corners(axis: CompletedAxis, steps: Sequence[float]) -> list[tuple[Corner, ShaftPlant]]:
-    """Every plant whose margins differ: friction and bus do not count in the friction-free loop, each payload does."""
+    """Every plant whose margins differ: friction and bus do not count in the friction-free loop, each payload does.
+
+    Parameters
+        axis: nominal
+        steps [1]: shares of their tolerance that load mass and stiffness take
+    Returns each corner with its plant
+    Source: [own]
+    """
     payloads = sorted({move.payload for move in axis.moves})
     return [
         (corner, at_corner(axis, corner).plant(payload * (1.0 + corner.get("load_mass", 0.0))))
