@@ -17,7 +17,7 @@ from typing import Any, TypeVar
 
 F = TypeVar("F", bound=Callable[..., Any])
 
-ROOMS = ("mechanics", "motion", "machine", "sizing", "loops", "simulation", "tuning")
+ROOMS = ("mechanics", "motion", "machine", "loops", "simulation")
 UNCOMPILED = os.environ.get("SETTLEPOINT_UNCOMPILED", "") == "1"
 
 
