@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import io
 import sys
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
@@ -28,8 +29,23 @@ RUNS = click.option(
 )
 
 
+def _version(context: click.Context, parameter: click.Parameter, asked: bool) -> None:
+    if asked:
+        from axis.sheet.shown import tool_version
+
+        click.echo(f"settlepoint {tool_version()}")
+        context.exit()
+
+
 @click.group(context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 110})
-@click.version_option(package_name="settlepoint", prog_name="settlepoint")
+@click.option(
+    "--version",
+    is_flag=True,
+    is_eager=True,
+    expose_value=False,
+    callback=_version,
+    help="Show the version and exit.",
+)
 def commands() -> None:
     """Size and tune a positioning axis before it exists.
 
@@ -47,13 +63,13 @@ def demo(folder: Path, seed: int | None, runs: int | None) -> int:
     Example: settlepoint demo
     """
     from axis.files.catalogue import shipped_folder
-    from axis.files.write import replace_file, save_loops
+    from axis.files.write import make_folder, replace_file, save_loops
     from axis.sheet.render import render
     from axis.sheet.terminal import check_text, size_text, tune_text
     from axis.study import load
     from axis.study import size as size_study
 
-    folder.mkdir(parents=True, exist_ok=True)
+    make_folder(folder)
     file = folder / DEMO_AXIS
     replace_file(file, (shipped_folder() / DEMO_AXIS).read_bytes())
     study = size_study(load(file))
@@ -172,6 +188,10 @@ def sheet(file: Path, catalogue: Path | None, output: Path, date: str | None) ->
 
     if output.suffix.lower() not in ENDINGS:
         raise click.BadParameter(f"'{output}' must end in {' or '.join(ENDINGS)}", param_hint="-o")
+    if output.exists() and file.exists() and output.samefile(file):
+        raise click.BadParameter(f"'{output}' is the axis file itself; name another file", param_hint="-o")
+    if not output.absolute().parent.is_dir():  # told before the work, not after it
+        raise CannotWrite(f"{output} cannot be written (there is no folder {output.parent})")
     with _progress() as progress:
         study = check_study(size_study(load(file, catalogue)), progress)
     replace_file(output, render(study, output.suffix.lower(), date))
@@ -209,7 +229,7 @@ def _print(
     if as_json:
         import json
 
-        click.echo(json.dumps(to_json(study), allow_nan=False, indent=1, ensure_ascii=False))
+        click.echo(json.dumps(to_json(study), allow_nan=False, indent=1))
     else:
         click.echo(to_text(study))
 
@@ -236,6 +256,9 @@ def _progress() -> Iterator[Callable[[float, str], None]]:
 
 def main(arguments: list[str] | None = None) -> None:
     """Run one command; errors are sentences on standard error, the exit code tells what happened."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="replace")  # a terminal or pipe of few characters still gets the figures
     sys.exit(run(arguments))
 
 

@@ -6,16 +6,16 @@ import math
 from typing import TypeVar
 
 from axis.completion import CompletedAxis, CompletedDrive, CompletedMotor, CompletedMove, Rates
+from axis.contradictions import CURRENT_PERIOD, contradictions, cross_checked, refuse_endless
 from axis.description.axis import Axis
 from axis.description.drive import Drive
 from axis.description.load import Friction
 from axis.description.motor import CurrentBasis, Motor
 from axis.description.moves import Move
 from axis.description.transmission import BallScrew, Gearbox
-from axis.errors import InputError, Problem
+from axis.errors import InputError
 from axis.machine.drive import rectified_bus
 from axis.machine.motor_constants import (
-    cross_check,
     current_to_peak,
     torque_constant_to_peak,
     voltage_constant_to_phase_peak,
@@ -38,23 +38,22 @@ BREAKAWAY_OVER_COULOMB = 1.3
 STRIBECK_SPEED = 0.005  # [m/s], or [rad/s] where the axis turns
 MODULATION_LIMIT = 0.90
 PEAK_TIME = 1.0  # [s]
-CURRENT_PERIOD = 62.5e-6  # [s]
 POLE_PAIRS = 4
 ENCODER_COUNTS = 2**20
 SETTLE_WITHIN = 0.05  # [s], for the observation only
 AMBIENT = 313.15  # [K]
 JERK_TIME = 0.02  # [s] from rest to full acceleration
 
+
 T = TypeVar("T")
 
 
 class _Notes:
-    """Collects assumptions, warnings and problems while an axis is completed."""
+    """Collects assumptions and warnings while an axis is completed."""
 
     def __init__(self) -> None:
         self.assumptions: list[Assumption] = []
         self.warnings: list[str] = []
-        self.problems: list[Problem] = []
 
     def assume(self, path: str, stated: T | None, default: T, text: str) -> T:
         if stated is not None:
@@ -63,15 +62,18 @@ class _Notes:
         self.assumptions.append(Assumption(path, text, value))
         return default
 
-    def need(self, path: str, stated: T | None, default: T, example: str) -> T:
-        if stated is not None:
-            return stated
-        self.problems.append(Problem(path, "is missing; the axis cannot be computed without it", example=example))
-        return default
+
+def _there(value: T | None) -> T:
+    """A value of which `contradictions` or the rules of the description have seen that it is stated."""
+    assert value is not None
+    return value
 
 
 def complete(axis: Axis) -> CompletedAxis:
     """Complete a stated axis; raises InputError with every value that is missing or contradicts another."""
+    problems = contradictions(axis)
+    if problems:
+        raise InputError(problems)
     notes = _Notes()
     stages = tuple(_stage(stage, f"transmission[{n}]", notes) for n, stage in enumerate(axis.transmission, start=1))
     chain = lump(stages)
@@ -79,6 +81,7 @@ def complete(axis: Axis) -> CompletedAxis:
     motor = _motor(axis.motor, notes)
     drive = _drive(axis.drive, axis.tolerance.supply_voltage, notes)
     moves = _moves(axis, notes)
+    refuse_endless(moves)
     if chain.stiffness == math.inf and axis.transmission:
         notes.assumptions.append(
             Assumption("transmission", "no stiffness is stated: the transmission is taken as rigid")
@@ -90,8 +93,6 @@ def complete(axis: Axis) -> CompletedAxis:
         SETTLE_WITHIN,
         "50 ms, only for how long the rest is observed",
     )
-    if notes.problems:
-        raise InputError(notes.problems)
     assert friction.breakaway is not None
     assert friction.stribeck_speed is not None
     return CompletedAxis(
@@ -123,12 +124,12 @@ def complete(axis: Axis) -> CompletedAxis:
 def _stage(stage: Gearbox | BallScrew, path: str, notes: _Notes) -> StageFloats:
     screw = isinstance(stage, BallScrew)
     if isinstance(stage, BallScrew):
-        lead = notes.need(f"{path}.lead", stage.lead, 0.01, '"20 mm"')
+        lead = _there(stage.lead)
         ratio = screw_ratio(-lead if stage.left_hand else lead)
         inertia = _screw_inertia(stage, path, notes)
         default_efficiency = SCREW_EFFICIENCY
     else:
-        ratio = notes.need(f"{path}.ratio", stage.ratio, 1.0, "3")
+        ratio = _there(stage.ratio)
         inertia = notes.assume(f"{path}.inertia", stage.inertia, 0.0, "no inertia is stated: taken as zero")
         default_efficiency = GEARBOX_EFFICIENCY
     efficiency = notes.assume(
@@ -199,20 +200,22 @@ def _motor(motor: Motor, notes: _Notes) -> CompletedMotor:
         "motor.current_basis", motor.current_basis, motor.torque_constant_basis or "rms", "the basis of torque_constant"
     )
     winding = motor.winding_basis or "phase"
-    resistance = winding_to_phase(notes.need("motor.resistance", motor.resistance, 1.0, '"2.6 ohm"'), winding)
-    inductance = winding_to_phase(notes.need("motor.inductance", motor.inductance, 1e-3, '"9.4 mH"'), winding)
-    saturated = inductance
-    if motor.saturated_inductance is not None:
-        saturated = winding_to_phase(motor.saturated_inductance, winding)
+    resistance = winding_to_phase(_there(motor.resistance), winding)
+    inductance = winding_to_phase(_there(motor.inductance), winding)
+    stated_saturated = motor.saturated_inductance
+    saturated = notes.assume(
+        "motor.saturated_inductance",
+        None if stated_saturated is None else winding_to_phase(stated_saturated, winding),
+        inductance,
+        "the inductance: no saturation is stated",
+    )
 
     def to_peak(value: float | None) -> float | None:
         return None if value is None else current_to_peak(value, current_basis)
 
     peak_current, peak_torque = to_peak(motor.peak_current), motor.peak_torque
-    if peak_current is None and peak_torque is None:
-        notes.need("motor.peak_current", None, 1.0, '"13 A"')
     if peak_current is None:
-        guess = (peak_torque or 1.0) / constant
+        guess = _there(peak_torque) / constant
         peak_current = notes.assume("motor.peak_current", None, guess, "peak torque over torque constant, q-axis peak")
     if peak_torque is None:
         peak_torque = notes.assume(
@@ -225,7 +228,7 @@ def _motor(motor: Motor, notes: _Notes) -> CompletedMotor:
         inductance=inductance,
         saturated_inductance=saturated,
         pole_pairs=notes.assume("motor.pole_pairs", motor.pole_pairs, POLE_PAIRS, f"{POLE_PAIRS}, common practice"),
-        inertia=notes.need("motor.inertia", motor.inertia, 1e-4, '"1.5 kg*cm^2"'),
+        inertia=_there(motor.inertia),
         peak_current=peak_current,
         peak_torque=peak_torque,
         encoder_counts=notes.assume(
@@ -262,36 +265,28 @@ def _constants(motor: Motor, notes: _Notes) -> tuple[float, float]:
             motor.voltage_constant, motor.voltage_constant_basis or "line-line rms"
         )
     if constant is not None and voltage is not None:
-        found = cross_check(
-            constant, voltage, motor.torque_constant_basis or "rms", motor.voltage_constant_basis or "line-line rms"
-        )
-        if found.kind == "error":
-            notes.problems.append(Problem("motor.torque_constant", found.text))
-        elif found.kind == "warning":
-            notes.warnings.append(f"motor.torque_constant: {found.text}")
+        checked = cross_checked(motor)
+        if checked is not None and checked.kind == "warning":
+            notes.warnings.append(f"motor.torque_constant: {checked.text}")
         return constant, voltage
     if constant is not None:
         return constant, notes.assume(
             "motor.voltage_constant", None, constant / 1.5, "from the torque constant, phase peak"
         )
-    if voltage is not None:
-        return notes.assume(
-            "motor.torque_constant", None, 1.5 * voltage, "from the voltage constant, per peak ampere"
-        ), voltage
-    notes.need("motor.torque_constant", None, 1.0, '"0.72 N*m/A" with torque_constant_basis = "rms"')
-    return 1.0, 1.0 / 1.5
+    volts = _there(voltage)
+    return notes.assume("motor.torque_constant", None, 1.5 * volts, "from the voltage constant, per peak ampere"), volts
 
 
 def _drive(drive: Drive, supply_tolerance: float, notes: _Notes) -> CompletedDrive:
     usual: CurrentBasis = "rms"
     basis = notes.assume("drive.current_basis", drive.current_basis, usual, "rms")
-    continuous = notes.need("drive.continuous_current", drive.continuous_current, 1.0, '"8 A"')
+    continuous = _there(drive.continuous_current)
     peak = notes.assume("drive.peak_current", drive.peak_current, continuous, "the continuous current")
     nominal = drive.dc_link_nominal
     if nominal is None and drive.supply_voltage is not None:
         nominal = rectified_bus(drive.supply_voltage)
         notes.assume("drive.dc_link_nominal", None, nominal, f"{nominal:.4g} V, the rectified supply without load")
-    nominal = notes.need("drive.supply_voltage", nominal, 1.0, '"400 V"')
+    nominal = _there(nominal)
     standstill = drive.standstill_current
     period = notes.assume("drive.current_period", drive.current_period, CURRENT_PERIOD, "62.5 us")
     velocity = notes.assume("drive.velocity_period", drive.velocity_period, 2.0 * period, "two current periods")

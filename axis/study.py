@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING
 
 from axis.complete import complete
 from axis.completion import CompletedAxis
+from axis.contradictions import contradictions
 from axis.files.axis_file import Document, read
 from axis.verdicts import Verdict, worst
 
@@ -21,9 +22,9 @@ if TYPE_CHECKING:
     from axis.tuning.result import Tuned
 
 DEFAULT_SEED = 1
-DEFAULT_RUNS = 5_000
+DEFAULT_RUNS = 4_000
 
-NO_LOOPS = "whether it settles is not evaluated: the file has no [loops]; settlepoint tune --write puts them there"
+NO_LOOPS = "Whether it settles is not evaluated: the file has no [loops]. Next: settlepoint tune --write FILE"
 
 Progress = Callable[[float, str], None]
 
@@ -48,7 +49,7 @@ class Study:
 
 def load(path: str | Path, catalogues: str | Path | None = None) -> Study:
     """Read and complete an axis file; raises InputError with all that is wrong."""
-    return opened(read(Path(path), None if catalogues is None else Path(catalogues)))
+    return opened(read(Path(path), None if catalogues is None else Path(catalogues), contradictions))
 
 
 def opened(document: Document) -> Study:

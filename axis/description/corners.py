@@ -16,7 +16,10 @@ SHARES = (-1.0, -0.5, 0.0, 0.5, 1.0)
 
 
 def corners(tolerance: Tolerance) -> list[dict[str, float]]:
-    """Every combination of tolerance ends; load mass and stiffness take five points each, ends included."""
+    """Every combination of tolerance ends; load mass and stiffness take five points each, ends included.
+
+    The nominal axis is none of them: it is computed beside them.
+    """
     names, points = [], []
     for field in fields(tolerance):
         share = float(getattr(tolerance, field.name))
@@ -24,4 +27,5 @@ def corners(tolerance: Tolerance) -> list[dict[str, float]]:
             steps = SHARES if field.name in FIVE_POINTS else (-1.0, 1.0)
             names.append(field.name)
             points.append([step * share for step in steps])
-    return [dict(zip(names, combination, strict=True)) for combination in itertools.product(*points)]
+    combinations = itertools.product(*points)
+    return [dict(zip(names, shares, strict=True)) for shares in combinations if any(shares)]

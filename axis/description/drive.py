@@ -60,13 +60,13 @@ class Drive:
         example="0.95",
     )
     current_period: float | None = quantity(
-        "s", "Period of the current loop", shown="us", above=0, default=None, example='"62.5 us"'
+        "s", "Period of the current loop", shown="us", at_least=1e-6, at_most=0.01, default=None, example='"62.5 us"'
     )
     velocity_period: float | None = quantity(
-        "s", "Period of the velocity loop", shown="us", above=0, default=None, example='"125 us"'
+        "s", "Period of the velocity loop", shown="us", at_least=1e-6, at_most=0.01, default=None, example='"125 us"'
     )
     position_period: float | None = quantity(
-        "s", "Period of the position loop", shown="us", above=0, default=None, example='"250 us"'
+        "s", "Period of the position loop", shown="us", at_least=1e-6, at_most=0.01, default=None, example='"250 us"'
     )
     computation_delay: float | None = quantity(
         "s",

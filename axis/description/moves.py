@@ -29,6 +29,7 @@ class Window:
         "Time the drive must stay inside before it reports in position",
         shown="ms",
         at_least=0,
+        at_most=60,
         default=0.0,
         example='"5 ms"',
     )
@@ -37,6 +38,7 @@ class Window:
         "Settling time that is allowed after the commanded end",
         shown="ms",
         above=0,
+        at_most=60,
         default=None,
         example='"30 ms"',
     )
@@ -135,9 +137,9 @@ class Move:
         example='"300 m/s^3"',
     )
     duration: float | None = quantity(
-        "s", "Duration of the move in place of its limits", above=0, default=None, example='"0.42 s"'
+        "s", "Duration of the move in place of its limits", above=0, at_most=600, default=None, example='"0.42 s"'
     )
-    dwell: float = quantity("s", "Rest after the move", at_least=0, default=0.0, example='"0.25 s"')
+    dwell: float = quantity("s", "Rest after the move", at_least=0, at_most=600, default=0.0, example='"0.25 s"')
     payload: str | None = plain("text", "Payload carried", default=None, example='"full tray"')
     force: float = quantity(
         "N", "Process force against positive travel", rotary="N*m", default=0.0, side="load", example='"0 N"'

@@ -13,7 +13,7 @@ class CurrentLoop:
     """PI current controller, in q-axis peak quantities."""
 
     kp: float = quantity("V/A", "Proportional gain of the current loop", above=0, symbol="K_pi", example='"22 V/A"')
-    ti: float = quantity("s", "Integral time of the current loop", shown="ms", above=0, example='"4.7 ms"')
+    ti: float = quantity("s", "Integral time of the current loop", shown="ms", above=0, at_most=10, example='"4.7 ms"')
 
 
 @dataclass(frozen=True)
@@ -28,7 +28,9 @@ class VelocityLoop:
         side="motor",
         example='"1.9 N*m*s/rad"',
     )
-    ti: float = quantity("s", "Integral time of the velocity loop", shown="ms", above=0, symbol="T_n", example='"6 ms"')
+    ti: float = quantity(
+        "s", "Integral time of the velocity loop", shown="ms", above=0, at_most=10, symbol="T_n", example='"6 ms"'
+    )
     setpoint_weight: float = plain(
         "ratio",
         "Set-point weight of the velocity loop",

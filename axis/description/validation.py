@@ -22,6 +22,7 @@ from axis.description.transmission import BallScrew, Gearbox, Stage
 from axis.errors import Problem
 from axis.units import Quantity, declarations, show
 
+MOST_FILTERS = 4  # in the torque path, as the simulation carries them
 WHOLE = 1e-6  # how near a ratio of two periods must come to a whole number
 CLOSES = 1e-9  # of the path travelled: how near the end of a cycle must come to its start
 
@@ -267,6 +268,9 @@ def _loops(moves: tuple[Move, ...], loops: Loops) -> list[Problem]:
     if jerks is not None and len(jerks) != len(moves):
         rule = f"must hold one jerk for each of the {len(moves)} moves"
         found.append(Problem("loops.move_jerk", rule, f"a list of {len(jerks)}", "one entry per [[move]], in order"))
+    if len(loops.filters) > MOST_FILTERS:
+        rule = f"are more than a drive's torque path holds here, {MOST_FILTERS}"
+        found.append(Problem("loops.filters", rule, f"{len(loops.filters)} filters", "a low-pass and a notch"))
     for n, item in enumerate(loops.filters, start=1):
         if item is None:
             continue

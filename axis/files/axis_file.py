@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 import tomllib
+from collections.abc import Callable
 from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import Any
@@ -48,18 +49,25 @@ class Document:
         return replace(new, path=self.path, digest=self.digest)
 
 
-def read(path: Path | str, catalogues: Path | str | None = None) -> Document:
-    """Read an axis file; InputError with everything that is wrong in it."""
+Rules = Callable[[Axis], list[Problem]]  # what is wrong with a walked axis; unreadable values in it are NaN or None
+
+
+def read(path: Path | str, catalogues: Path | str | None = None, further: Rules = lambda axis: []) -> Document:
+    """Read an axis file; InputError with everything that is wrong in it, `further` rules among them."""
     file = Path(path)
     data = read_bytes(file, LARGEST_FILE, _WHAT)
     text = as_text(data, file.name, LARGEST_FILE, _WHAT)
     folder = Path(catalogues) if catalogues is not None else None
-    document = read_text(text, file.parent, folder, file.name)
+    document = read_text(text, file.parent, folder, file.name, further)
     return replace(document, path=file, digest=digest_of(data))
 
 
 def read_text(
-    text: str, base_folder: Path | None = None, catalogues: Path | None = None, name: str = "axis file"
+    text: str,
+    base_folder: Path | None = None,
+    catalogues: Path | None = None,
+    name: str = "axis file",
+    further: Rules = lambda axis: [],
 ) -> Document:
     """The same from a text; `base_folder` is where its catalogues may lie beside it."""
     data = text.encode("utf-8", errors="surrogatepass")
@@ -70,10 +78,11 @@ def read_text(
     walker.problems += _format(raw.pop("format", None))
     origins, digests, in_vain = _fill_from_catalogues(raw, base_folder, catalogues, walker)
     axis: Axis = walker.table(Axis, raw, "")
-    told = {problem.path for problem in walker.problems}
-    for problem in problems_in(vars(axis)):
-        if problem.path not in told and not problem.path.startswith(tuple(f"{path}." for path in in_vain)):
-            walker.problems.append(replace(problem, value=_as_typed(walker.typed, problem)))
+    for rules in (lambda axis: problems_in(vars(axis)), further):
+        told = {problem.path for problem in walker.problems}
+        for problem in rules(axis):
+            if problem.path not in told and not problem.path.startswith(tuple(f"{path}." for path in in_vain)):
+                walker.problems.append(replace(problem, value=_as_typed(walker.typed, problem)))
     if walker.problems:
         raise InputError(sorted(walker.problems, key=lambda p: _place(p.path, order)))
     typed = {path: value for path, value in walker.typed.items() if path not in origins}

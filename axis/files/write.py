@@ -55,6 +55,15 @@ def replace_file(path: Path, data: bytes, digest: str | None = None) -> None:
         raise CannotWrite(f"{path} cannot be written ({reason}); whatever stood there is whole.") from None
 
 
+def make_folder(path: Path) -> None:
+    """Make a folder with all above it; one that is there stays as it is."""
+    try:
+        path.mkdir(parents=True, exist_ok=True)
+    except OSError as error:
+        reason = "it is a file" if path.exists() else error.strerror or error
+        raise CannotWrite(f"{path} cannot be made a folder ({reason}); nothing was written.") from None
+
+
 def save(path: Path, document: Document, force: bool = False) -> Document:
     """Write the document's text; refused where the file has changed since it was read, unless `force` says so."""
     data = document.text.encode("utf-8")

@@ -59,14 +59,15 @@ def tune_text(study: Study) -> str:
 
 def check_text(study: Study) -> str:
     """Every move, nominal and at its worst corner, then the verdict."""
+    if study.settled is None:
+        return f"{study.document.axis.head.name}: {headline(study)}"
     lines: list[str] = []
     for move in move_rows(study):
         lines += ["", f"{move.title}: {WORDS[move.verdict]}, {move.sentence}", f"  worst {move.worst_corner}"]
         lines += _columns([("", "nominal", "worst"), *((row.name, row.nominal, row.worst) for row in move.figures)])
         lines += _checks(move.checks)
-    if study.settled is not None:
-        lines += ["", "Axis as a whole"]
-        lines += _checks(check_rows(study.settled.checks, study.axis.stated.rotary))
+    lines += ["", "Axis as a whole"]
+    lines += _checks(check_rows(study.settled.checks, study.axis.stated.rotary))
     lines += ["", *limit_sentences(study)]
     lines += ["", f"{SHAPES[study.verdict]} {WORDS[study.verdict]}: {headline(study)}", f"({PRELIMINARY})"]
     return "\n".join(lines)
