@@ -81,6 +81,7 @@ def declarations(cls: Any) -> dict[str, Quantity | Plain]:
 # ---- text → SI -------------------------------------------------------------------------------------------------------
 
 LONGEST_TEXT = 80
+LARGEST = 1e30  # [SI] beyond it products of two values leave the range of floats
 _LONGEST_UNIT = 40
 _LARGEST_EXPONENT = 6
 _MOST_BRACKETS = 4
@@ -165,6 +166,8 @@ def _read(text: str, declaration: Quantity, rotary: bool) -> float:
     result = reading.to_si(value)
     if not math.isfinite(result):
         raise _Refused("is not a finite number")
+    if abs(result) > LARGEST:
+        raise _Refused("is larger than anything an axis has")
     return result
 
 
