@@ -138,12 +138,12 @@ def tune(file: Path, catalogue: Path | None, as_json: bool, seed: int | None, ru
     """
     from axis.files.write import save_loops
     from axis.sheet.as_json import tune_json
-    from axis.sheet.terminal import tune_text
+    from axis.sheet.terminal import check_text, tune_text
     from axis.study import load
 
     with _progress() as progress:
         study = _tuned(load(file, catalogue), seed, runs, progress)
-    _print(study, as_json, tune_json, tune_text)
+    _print(study, as_json, tune_json, lambda tuned: f"{tune_text(tuned)}\n{check_text(tuned)}")
     if write and study.tuned is not None:
         save_loops(file, study.document, study.tuned.loops)
         click.echo(f"wrote [loops] into {file}", err=as_json)

@@ -7,13 +7,14 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from axis.completion import CompletedAxis, at_corner
-from axis.description.moves import Window
+from axis.description.moves import Move, Window
 from axis.settling.rest import rest_band
 from axis.simulation.record import MoveOutcome, Outcome
-from axis.units import Quantity, declarations, show
+from axis.units import Quantity, declarations, digits_of, in_shown, show, shown_unit
 from axis.verdicts import Check, Verdict, worst
 
 PRESLIDING_WINDOW = 20e-6  # [m] below it the elastic motion of guides before they slide decides whether the load hunts
+BUCKET_RISE = 1e-9  # of its capacity a cycle
 SOURCE = "definitions of docs/model.md, simulated"
 
 
@@ -115,7 +116,12 @@ def judge(axis: CompletedAxis, outcomes: list[CornerOutcome], nominal: Outcome) 
     return Settled(
         moves=tuple(moves),
         corners=len(outcomes),
-        checks=(*_stability(outcomes), _rest_check(axis, [entry.corner for entry in outcomes]), *_presliding(axis)),
+        checks=(
+            *_stability(outcomes),
+            *_bucket(outcomes),
+            _rest_check(axis, [entry.corner for entry in outcomes]),
+            *_presliding(axis),
+        ),
         repeated=all(entry.outcome.repeated for entry in outcomes),
     )
 
@@ -147,47 +153,70 @@ def _rule_check(axis: CompletedAxis, rule: Rule, n: int, at: list[tuple[Mapping[
         unit=rule.unit,
         margin=margin,
         reason=_reason(rule, move, where),
-        remedy="" if passes else _remedy(axis, rule, move, demand),
+        remedy="" if passes else _remedy(axis, rule, axis.moves[n].speed, move, demand),
     )
 
 
 def _reason(rule: Rule, move: MoveOutcome, where: str) -> str:
     if rule.id == "settling" and math.isinf(move.time_to_window):
-        return f"never inside the window to the end of the observed {move.observed * 1e3:.4g} ms, {where}"
+        return f"still outside at the end of the observation, {_ms(move.observed)}, {where}"
     if rule.id == "signal" and math.isinf(move.signal):
         return f"the signal never comes, {where}"
     if rule.id == "signal" and move.signal_early > 0:
-        settled = f"load settled at {move.time_to_window * 1e3:.4g} ms"
+        settled = f"the load has settled at {_ms(move.time_to_window)}"
         if math.isinf(move.time_to_window):
             settled = "the load never settles"
-        return f"signal at {move.signal * 1e3:.4g} ms, {settled}, {where}: that signal lies"
+        return f"the signal comes at {_ms(move.signal)}, {settled}, {where}: that signal lies"
+    if rule.id == "current_time" and move.tripped:
+        return f"the bucket is full and the drive falls back to its continuous current, {where}"
     return f"worst {where}"
 
 
-def _remedy(axis: CompletedAxis, rule: Rule, move: MoveOutcome, demand: float) -> str:
-    window = axis.stated.window
+def _remedy(axis: CompletedAxis, rule: Rule, speed: float | None, move: MoveOutcome, demand: float) -> str:
     if rule.id == "signal":
-        return f"a window time of {(window.time + demand) * 1e3:.4g} ms or more" if math.isfinite(demand) else ""
+        return _signal_remedy(axis, move)
     if rule.id == "settling" and math.isfinite(demand):
-        return f"settings that settle faster (settlepoint tune), or settle_within of {demand * 1e3:.4g} ms"
+        return f"settings that settle faster (settlepoint tune), or settle_within = {_typed(axis, rule.id, demand)}"
     if rule.id == "settling":
-        return (
-            f"settings that bring the load to rest inside the window (settlepoint tune); it ends "
-            f"{_length(axis, 'position', abs(move.rest_error))} from its target"
-        )
+        ends = _typed(axis, "position", abs(move.rest_error)).strip('"')
+        return f"settings that bring the load to rest inside (settlepoint tune); it ends {ends} off"
     if rule.id in ("following_error", "overshoot"):
-        limit = _length(axis, "max_overshoot" if rule.id == "overshoot" else rule.id, demand)
-        return f"settings that follow closer, a softer move, or a limit of {limit}"
+        if not math.isfinite(demand):
+            return "settings under which the loop is stable (settlepoint tune)"
+        key = "max_overshoot" if rule.id == "overshoot" else rule.id
+        return f"settings that follow closer (settlepoint tune), a softer move, or {key} = {_typed(axis, key, demand)}"
     if rule.id == "speed":
-        return "a lower speed of the move"
+        if speed is None or rule.limit is None or not math.isfinite(demand):
+            return "a slower move"
+        declared = declarations(Move)["speed"]
+        assert isinstance(declared, Quantity)
+        return (
+            f"a speed of the move of at most {show(0.999 * speed * rule.limit / demand, declared, axis.stated.rotary)}"
+        )
     return "a longer dwell or a lower acceleration, so that the drive's current-time limit is not reached"
 
 
-def _length(axis: CompletedAxis, name: str, value: float) -> str:
-    """A length in the unit in which the window's field of that name is shown."""
-    declared = declarations(Window)[name]
+def _signal_remedy(axis: CompletedAxis, move: MoveOutcome) -> str:
+    if math.isinf(move.time_to_window):
+        return "the load must settle first"
+    if math.isinf(move.signal):
+        return "settings that bring the motor to rest inside the window (settlepoint tune), or a shorter window time"
+    return f"a longer window time: time = {_typed(axis, 'time', axis.stated.window.time + move.signal_early)}"
+
+
+def _typed(axis: CompletedAxis, name: str, least: float) -> str:
+    """A value of the window's field of that name as it is typed: three digits, none of them below `least`."""
+    declared = declarations(Window)["settle_within" if name == "settling" else name]
     assert isinstance(declared, Quantity)
-    return show(value, declared, axis.stated.rotary)
+    number = in_shown(least, declared, axis.stated.rotary)
+    if number != 0.0 and math.isfinite(number):
+        step = 10.0 ** (math.floor(math.log10(abs(number))) - 2)
+        number = math.ceil(number / step) * step
+    return f'"{digits_of(number, 3)} {shown_unit(declared, axis.stated.rotary)}"'
+
+
+def _ms(time: float) -> str:
+    return f"{time * 1e3:.4g} ms"
 
 
 def _stability(outcomes: list[CornerOutcome]) -> tuple[Check, ...]:
@@ -202,6 +231,23 @@ def _stability(outcomes: list[CornerOutcome]) -> tuple[Check, ...]:
             SOURCE,
             reason=f"unstable at {len(unstable)} of {len(outcomes)} corners, among them {corner_in_words(unstable[0])}",
             remedy="lower gains, or settings found by settlepoint tune",
+        ),
+    )
+
+
+def _bucket(outcomes: list[CornerOutcome]) -> tuple[Check, ...]:
+    """A bucket that ends each cycle fuller than it began is full sooner or later, though no simulated cycle trips."""
+    worst_corner = max(outcomes, key=lambda entry: entry.outcome.bucket_rise)
+    if not worst_corner.outcome.bucket_rise > BUCKET_RISE:
+        return ()
+    reason = (
+        f"it gains {worst_corner.outcome.bucket_rise * 100:.3g} % of its capacity with every cycle, "
+        f"{corner_in_words(worst_corner.corner)}: it is full sooner or later"
+    )
+    remedy = "a longer dwell or a lower acceleration, so that the bucket empties within the cycle"
+    return (
+        Check(
+            "current_time_cycle", "Current-time bucket over many cycles", "fail", SOURCE, reason=reason, remedy=remedy
         ),
     )
 
@@ -225,8 +271,14 @@ def _rest_check(axis: CompletedAxis, corners: list[Mapping[str, float]]) -> Chec
         unit="rad" if axis.stated.rotary else "m",
         margin=(kept - band) / kept,
         reason=f"worst {where}; no setting changes it with the encoder at the motor",
-        remedy="" if band <= kept else f"a transmission {band / kept:.3g} times as stiff, or less break-away friction",
+        remedy="" if band <= kept else _rest_remedy(axis, band, kept),
     )
+
+
+def _rest_remedy(axis: CompletedAxis, band: float, kept: float) -> str:
+    times = math.ceil(band / kept * 100.0) / 100.0
+    wider = _typed(axis, "position", axis.stated.window.position * band / kept)
+    return f"a transmission {times:.4g} times as stiff, as much less break-away friction, or position = {wider}"
 
 
 def _presliding(axis: CompletedAxis) -> tuple[Check, ...]:

@@ -23,7 +23,7 @@ def settlepoint(*arguments: str | Path, folder: Path | None = None, **more: str)
         cwd=folder,
         env=ENVIRONMENT | more,
         capture_output=True,
-        encoding="utf-8",
+        encoding=(ENVIRONMENT | more)["PYTHONIOENCODING"],
         timeout=WATCHDOG,
         check=False,
     )

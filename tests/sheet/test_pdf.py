@@ -68,7 +68,7 @@ def test_a_sheet_that_fails_stays_on_two_pages() -> None:
     data = made(bad)
     assert len(pypdf.PdfReader(io.BytesIO(data)).pages) == 2
     told = text_of(data)
-    assert _plain("never inside the window") in told
+    assert _plain("still outside at the end") in told
     assert "fails" in told
     assert "remedy:" in told
 
