@@ -26,7 +26,8 @@ from axis.mechanics.compliance import resonance
 DEPTHS = (0.5, 0.25, 0.1, 0.05)
 POLE_DAMPINGS = (0.3, 0.7)
 HIGHEST = 0.8  # of half the sampling rate: above it the bilinear notch is no longer the one that was drawn
-SLOWER = 0.95  # steps in which the order-3 design is slowed
+SLOWER = 0.95  # fine steps in which the order-3 design is slowed
+COARSE = 5  # fine steps in a coarse one
 SLOWEST = 1e-3  # of its fastest natural frequency: the end of the search
 WORTH = 0.95  # a deeper notch must settle in less than this share of the time
 
@@ -111,17 +112,24 @@ def design_with_filters(
         found = attempt(order4_design((alpha, beta, gamma), inertia, lag, weight), 4, 1.0 / (alpha * lag))
         if found is not None:
             return found
-    fastest = SLOWER / (third[0] * lag)
-    omega = fastest
-    while omega > SLOWEST * fastest:
+
+    def third_order(omega: float) -> Designed | None:
         try:
-            found = attempt(order3_design((third[0], third[1]), omega, inertia, lag, weight), 3, omega)
+            return attempt(order3_design((third[0], third[1]), omega, inertia, lag, weight), 3, omega)
         except NotComputable:  # this set-point weight needs a slower design
-            found = None
-        if found is not None:
-            return found
-        omega *= SLOWER
-    return None
+            return None
+
+    fastest = SLOWER / (third[0] * lag)
+    coarse, omega = None, fastest
+    while coarse is None and omega > SLOWEST * fastest:
+        coarse = third_order(omega)
+        omega *= SLOWER**COARSE
+    if coarse is None:
+        return None
+    # Between this coarse step and the one before lies the fastest design: come down again in fine steps.
+    above = [coarse.natural_frequency / SLOWER**n for n in range(COARSE - 1, 0, -1)]
+    finer = (third_order(omega) for omega in above if omega < fastest)
+    return next((found for found in finer if found is not None), coarse)
 
 
 def designed_start(

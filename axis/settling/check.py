@@ -20,7 +20,7 @@ def check(
     axis: CompletedAxis, loops: Loops, progress: Progress | None = None, executor: Executor | None = None
 ) -> Settled:
     """Every move at the nominal axis and at every corner of its tolerances."""
-    asked: list[Mapping[str, float]] = [{}, *(corner for corner in corners(axis.stated.tolerance) if corner)]
+    asked: list[Mapping[str, float]] = [{}, *corners(axis.stated.tolerance)]
     outcomes = run_corners(axis, loops, asked, progress, executor)
     at = [CornerOutcome(corner, outcome) for corner, outcome in zip(asked, outcomes, strict=True)]
     return judge(axis, at, outcomes[0])

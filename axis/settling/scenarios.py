@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import replace
 
@@ -42,10 +43,10 @@ def observed_dwell(axis: CompletedAxis, move: CompletedMove, loops: Loops) -> fl
     return max(move.dwell, least_observation(axis.settle_within, axis.stated.window.time, loops.velocity.ti))
 
 
-def commanded(axis: CompletedAxis, loops: Loops) -> tuple[CommandedMove, ...]:
-    """The cycle as it is commanded and observed."""
+def commanded(axis: CompletedAxis, loops: Loops, longest: float = math.inf) -> tuple[CommandedMove, ...]:
+    """The cycle as it is commanded and observed; no dwell is observed for more than `longest` [s]."""
     return tuple(
-        CommandedMove(move_profile(move).pieces, observed_dwell(axis, move, loops))
+        CommandedMove(move_profile(move).pieces, min(observed_dwell(axis, move, loops), longest))
         for move in with_jerk(axis, loops).moves
     )
 

@@ -78,6 +78,7 @@ Whole = npt.NDArray[np.int64]
 
 on_piece = compiled_part(evaluate_piece)
 
+ROUNDING = 1e-9  # of a current period: a commanded end this little after a sample is at it
 SAME = 0.01  # of the window: records closer than this are one
 KEPT = 5  # cycles whose worst counts where no two agree
 
@@ -164,7 +165,7 @@ def run_move(
         y = x[ANGLE] - x[TWIST] + rest_offset
         difference = max(difference, abs(y - base - record[n]))
         record[n] = y - base
-        if time >= move[DURATION]:
+        if time + ROUNDING * period >= move[DURATION]:
             signal(figures, o, abs(angle - target) <= frame[WINDOW], frame[WINDOW_SAMPLES], time)
         if not abs(y) < math.inf:
             return math.inf

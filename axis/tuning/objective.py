@@ -58,7 +58,12 @@ class Objective:
     """Scores of candidates on a growing set of corners; smaller is better."""
 
     def __init__(
-        self, axis: CompletedAxis, start: Loops, corners: Sequence[Corner], plants: Sequence[ShaftPlant]
+        self,
+        axis: CompletedAxis,
+        start: Loops,
+        corners: Sequence[Corner],
+        plants: Sequence[ShaftPlant],
+        longest_dwell: float = math.inf,
     ) -> None:
         self.axis = axis
         self.runs = 0
@@ -77,6 +82,7 @@ class Objective:
         self._frame = frame_vector(axis.drive.rates, axis.motor.torque_constant, axis.ratio, window, stated.window.time)
         self._current = start.current
         self._inertia = axis.plant().total_inertia
+        self._longest_dwell = longest_dwell  # [s] observed of any dwell
         self._plants = np.zeros((0, len(axis.moves), PLANT_SIZE))
         self._limits = np.zeros((0, LIMITS_SIZE))
         self.corners: list[Corner] = []
@@ -141,7 +147,7 @@ class Objective:
     def _figures(self, loops: Loops, first: int, last: int) -> tuple[Array, Array]:
         """What the kernel saw at corners `first` to `last`, and the durations of the moves."""
         gains = gains_vector(loops, self.axis.drive.rates, self._inertia)
-        cycle = cycle_arrays(commanded(self.axis, loops), self.axis.drive.rates, self.axis.ratio)
+        cycle = cycle_arrays(commanded(self.axis, loops, self._longest_dwell), self.axis.drive.rates, self.axis.ratio)
         figures = np.zeros((last - first, len(self.axis.moves), FIGURES_SIZE))
         cycles = np.zeros(last - first, dtype=np.int64)
         simulate_corners(
@@ -149,6 +155,24 @@ class Objective:
             cycle.pieces, cycle.first_piece, cycle.moves, CYCLES, figures, cycles,
         )  # fmt: skip
         return figures, cycle.moves[:, DURATION]
+
+    def taken_in(
+        self, corners: Sequence[Corner], candidates: Sequence[Loops], scores: Sequence[float], executor: Executor
+    ) -> list[float]:
+        """Take corners in; the scores with them. A score is that of the worst corner, so only the new ones are run."""
+        before = len(self.corners)
+        self.add(corners)
+        new = len(self.corners) - before
+
+        def raised(loops: Loops, score: float) -> float:
+            if new == 0 or score >= UNSTABLE_SCORE:
+                return score
+            figures, durations = self._figures(loops, 0, new)
+            return max(score, *(corner_score(at, durations, self.conditions) for at in figures))
+
+        results = list(executor.map(raised, candidates, scores))
+        self.runs += new * sum(score < UNSTABLE_SCORE for score in scores)
+        return results
 
     def scores(self, candidates: Sequence[Loops], beat: Sequence[float], executor: Executor) -> list[float]:
         """Scores of many candidates, in their order; counts the runs."""

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from axis.completion import CompletedAxis
+from axis.completion import CompletedAxis, at_corner
 from axis.description.corners import SHARES, corners
 from axis.description.settings import Loops
 from axis.errors import NotComputable, Stopped
@@ -17,7 +17,7 @@ from axis.loops.lag import velocity_loop_lags
 from axis.loops.start import Designed, designed_start
 from axis.loops.textbook import textbook_settings
 from axis.settling.check import check
-from axis.sizing.bound import bounds
+from axis.sizing.bound import move_bound
 from axis.tuning.evolution import Population, generations
 from axis.tuning.objective import VIOLATION_SCORE, Corner, Objective, extreme_plants, margin_corners
 from axis.tuning.reference import judged, margins_everywhere
@@ -25,13 +25,14 @@ from axis.tuning.result import Reference, Step, Tuned
 from axis.tuning.start import WIDEST_BAND, bare_loops, own_band
 from axis.tuning.variables import Space, rounded, space
 
-POPULATION = 32
+POPULATION = 20
 SCREENED = 640  # random points judged on their margins alone
-GENERATIONS = 10  # between two looks at all corners
-NEW_CORNERS = 2  # taken into the search at each look
+GENERATIONS = 8  # between two looks at all corners
+NEW_CORNERS = 3  # taken into the search at each look
 JERK_TIMES = (5e-3, 20e-3, 40e-3)  # [s] with which the designed start joins the search
 VERIFIED = 5  # looks that are tried in full
 NOTHING_FOUND = "no settings were found that hold at every computed corner"
+SETTLING_TIMES = 2.0  # asked settling times that the search watches of a rest; verification watches all of it
 SEARCH_SHARE = 0.9  # of the progress bar
 
 Progress = Callable[[float, str], None]
@@ -61,32 +62,35 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     """
     tell = progress or (lambda share, best: None)
     tell(0.0, "designing the start")
-    every: list[Corner] = [{}, *(corner for corner in corners(axis.stated.tolerance) if corner)]
+    every: list[Corner] = [{}, *corners(axis.stated.tolerance)]
     bare, lag = bare_loops(axis)
-    search = Objective(axis, bare, _first_corners(every), extreme_plants(axis))
+    brief = SETTLING_TIMES * axis.settle_within + axis.stated.window.time
+    search = Objective(axis, bare, _first_corners(every), extreme_plants(axis), longest_dwell=brief)
     everywhere = Objective(axis, bare, every, [plant for _, plant in margin_corners(axis, SHARES)])
     started = _designed(axis, bare, search)
     designed = rounded(started.loops)
     path = [_step(f"designed: prototype of order {started.order}", axis, designed, executor)]
     looks = [_look(designed, everywhere, executor)]
     stopped = ""
+    starts = [designed, _textbook(axis, designed, search)]
     try:
-        for look in _search(space(axis, bare, lag), started, search, everywhere, seed, runs, tell, executor):
+        for look in _search(space(axis, bare, lag), starts, search, everywhere, seed, runs, tell, executor):
             looks.append(look)
         tell(SEARCH_SHARE, "verifying at every corner")
     except Stopped:
         stopped = ", stopped"
+    best = min(looks, key=lambda look: look.score)
+    looks.append(_look(rounded(_textbook(axis, best.loops, search)), everywhere, executor))
     result = _verified(axis, looks, executor)
     holds = margins_everywhere(axis, result.loops)
     path.append(_as_step(f"searched{stopped}: {search.runs} simulated cycles, seed {seed}", axis, result))
-    bound, machine_bound = bounds(axis, dict(result.settled.moves[0].worst_corner))
     textbook = _textbook(axis, result.loops, search)
     return Tuned(
         result=result,
         textbook=judged(axis, textbook, check(axis, textbook, None, executor)),
         path=tuple(path),
-        bound=bound,
-        machine_bound=machine_bound,
+        bound=_bound(axis, result, own_limits=True),
+        machine_bound=_bound(axis, result, own_limits=False),
         seed=seed,
         runs=search.runs,
         margins_hold=holds,
@@ -125,7 +129,7 @@ def _designed(axis: CompletedAxis, bare: Loops, search: Objective) -> Designed:
 
 def _search(
     unknowns: Space,
-    started: Designed,
+    starts: list[Loops],
     search: Objective,
     everywhere: Objective,
     seed: int,
@@ -135,7 +139,7 @@ def _search(
 ) -> Iterator[_Look]:
     """Evolve a population until the budget is used; in between look at all corners and take in the worst."""
     random = np.random.default_rng(seed)
-    population = _first_population(unknowns, started, search, random, executor)
+    population = _first_population(unknowns, starts, search, random, executor)
 
     def evaluate(points: list[np.ndarray], beat: list[float]) -> list[float]:
         return search.scores([unknowns.loops(point) for point in points], beat, executor)
@@ -156,19 +160,20 @@ def _search(
         look = _look(candidate, everywhere, executor)
         yield look
         known = search.corners
-        search.add([corner for corner in look.corners if corner not in known][:NEW_CORNERS])
-        population.scores = evaluate(population.points, [math.inf] * len(population.points))
+        fresh = [corner for corner in look.corners if corner not in known][:NEW_CORNERS]
+        members = [unknowns.loops(point) for point in population.points]
+        population.scores = search.taken_in(fresh, members, population.scores, executor)
 
 
 def _first_population(
-    unknowns: Space, started: Designed, search: Objective, random: np.random.Generator, executor: Executor
+    unknowns: Space, starts: list[Loops], search: Objective, random: np.random.Generator, executor: Executor
 ) -> Population:
-    """The designed start and the random points that miss the margins least."""
+    """Designed and textbook settings, each with a few jerks, and the random points that miss the margins least."""
     points = [random.random(len(unknowns.variables)) for _ in range(SCREENED)]
     missed = list(executor.map(lambda point: search.margins(unknowns.loops(point)), points))
     order = np.argsort(missed, kind="stable")
-    chosen = [points[int(n)] for n in order[: POPULATION - len(JERK_TIMES)]]
-    chosen += [unknowns.point(started.loops, jerk_time) for jerk_time in JERK_TIMES]
+    chosen = [unknowns.point(loops, jerk_time) for loops in starts for jerk_time in JERK_TIMES]
+    chosen += [points[int(n)] for n in order[: POPULATION - len(chosen)]]
     scores = search.scores([unknowns.loops(point) for point in chosen], [math.inf] * len(chosen), executor)
     return Population(chosen, scores)
 
@@ -203,6 +208,15 @@ def _textbook(axis: CompletedAxis, loops: Loops, search: Objective) -> Loops:
     lag = velocity_loop_lags(axis.motor.inductance, rates, loops.current, loops.velocity.filter, loops.filters).total
     plants = [search.sampled(plant) for plant in extreme_plants(axis)]
     return textbook_settings(loops, inertia, lag, plants, axis.stated.tuning, torque_share=1.0).loops
+
+
+def _bound(axis: CompletedAxis, found: Reference, own_limits: bool) -> float:
+    """[s] Sum of the rigid axis's fastest moves, each at the corner that is worst for it."""
+    total = 0.0
+    for n, move in enumerate(found.settled.moves):
+        there = at_corner(axis, move.worst_corner)
+        total += move_bound(there, there.moves[n], own_limits)
+    return total
 
 
 def _step(name: str, axis: CompletedAxis, loops: Loops, executor: Executor) -> Step:
