@@ -17,6 +17,7 @@ from axis.loops.lag import velocity_loop_lags
 from axis.loops.start import Designed, designed_start
 from axis.loops.textbook import textbook_settings
 from axis.settling.check import check
+from axis.simulation.ahead import compile_ahead
 from axis.sizing.bound import move_bound
 from axis.tuning.evolution import Population, generations
 from axis.tuning.objective import VIOLATION_SCORE, Corner, Objective, extreme_plants, margin_corners
@@ -61,13 +62,14 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     Source: [own]
     """
     tell = progress or (lambda share, best: None)
-    tell(0.0, "designing the start")
+    tell(0.0, "designing the start; the first time on a machine the simulation is compiled")
+    compiled = compile_ahead()
     every: list[Corner] = [{}, *corners(axis.stated.tolerance)]
     bare, lag = bare_loops(axis)
     brief = SETTLING_TIMES * axis.settle_within + axis.stated.window.time
     search = Objective(axis, bare, _first_corners(every), extreme_plants(axis), longest_dwell=brief)
     everywhere = Objective(axis, bare, every, [plant for _, plant in margin_corners(axis, SHARES)])
-    started = _designed(axis, bare, search)
+    started = _designed(axis, bare, search, compiled)
     designed = rounded(started.loops)
     path = [_step(f"designed: prototype of order {started.order}", axis, designed, executor)]
     looks = [_look(designed, everywhere, executor)]
@@ -105,8 +107,11 @@ def _first_corners(every: list[Corner]) -> list[Corner]:
     return [every[place] for place in places]
 
 
-def _designed(axis: CompletedAxis, bare: Loops, search: Objective) -> Designed:
-    """The design that does best on the first corners: for the published band of 2 %, and for the axis's own."""
+def _designed(axis: CompletedAxis, bare: Loops, search: Objective, compiled: Callable[[], None]) -> Designed:
+    """The design that does best on the first corners: for the published band of 2 %, and for the axis's own.
+
+    `compiled` waits for the simulation, which the first design does without.
+    """
     plants = extreme_plants(axis)
     corners = [search.sampled(plant) for plant in plants]
     rates, wishes = axis.drive.rates, axis.stated.tuning
@@ -117,6 +122,7 @@ def _designed(axis: CompletedAxis, bare: Loops, search: Objective) -> Designed:
 
     window = axis.stated.window.position * (1.0 - wishes.kept_back)
     published = design(WIDEST_BAND)
+    compiled()
     band = own_band(window, search.largest_following_error(published.loops))
     if band == WIDEST_BAND:
         return published
