@@ -44,7 +44,15 @@ def observed_dwell(axis: CompletedAxis, move: CompletedMove, loops: Loops) -> fl
 
 
 def commanded(axis: CompletedAxis, loops: Loops, longest: float = math.inf) -> tuple[CommandedMove, ...]:
-    """The cycle as it is commanded and observed; no dwell is observed for more than `longest` [s]."""
+    """The cycle as it is commanded and observed.
+
+    Parameters
+        axis: the completed axis
+        loops: the settings
+        longest [s]: most that is observed of a dwell
+    Returns the moves with their dwells
+    Source: [own]
+    """
     return tuple(
         CommandedMove(move_profile(move).pieces, min(observed_dwell(axis, move, loops), longest))
         for move in with_jerk(axis, loops).moves
