@@ -78,9 +78,9 @@ def demo(folder: Path, seed: int | None, runs: int | None) -> int:
         study = _tuned(study, seed, runs, progress)
     click.echo(tune_text(study))
     click.echo(check_text(study))
-    assert study.tuned is not None
-    save_loops(file, study.document, study.tuned.loops)
     written = [file]
+    if study.tuned is not None:
+        save_loops(file, study.document, study.tuned.loops)
     for ending in (".pdf", ".json"):
         written.append(folder / f"settings-sheet{ending}")
         replace_file(written[-1], render(study, ending, None))

@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING
 from axis.complete import complete
 from axis.completion import CompletedAxis
 from axis.contradictions import contradictions
+from axis.errors import NotComputable
 from axis.files.axis_file import Document, read
 from axis.verdicts import Verdict, worst
 
@@ -25,6 +26,9 @@ DEFAULT_SEED = 1
 DEFAULT_RUNS = 4_000
 
 NO_LOOPS = "Whether it settles is not evaluated: the file has no [loops]. Next: settlepoint tune --write FILE"
+NO_DESIGN = (
+    "No settings are found: wish for smaller margins in [tuning], state narrower tolerances or a stiffer transmission"
+)
 
 Progress = Callable[[float, str], None]
 
@@ -74,8 +78,11 @@ def tune(
     """Search settings; the study then carries them, and the verdict of the simulation under them."""
     from axis.tuning.tune import tune as tune_axis
 
-    with _workers(executor) as workers:
-        tuned = tune_axis(study.axis, seed=seed, runs=runs, progress=progress, executor=workers)
+    try:
+        with _workers(executor) as workers:
+            tuned = tune_axis(study.axis, seed=seed, runs=runs, progress=progress, executor=workers)
+    except NotComputable as error:
+        return replace(study, tuned=None, settled=None, unevaluated=f"{NO_DESIGN} ({error}).")
     stated = replace(study.document.axis, loops=tuned.loops)
     document = replace(study.document, axis=stated)
     return replace(

@@ -29,7 +29,8 @@ def size_json(study: Study) -> dict[str, Any]:
 
 def tune_json(study: Study) -> dict[str, Any]:
     """The settings that tuning found, beside the textbook's and the bounds."""
-    return _frame(study, _settled_checks(study)) | _loops(study) | _tuned(study)
+    found = _frame(study, _settled_checks(study))
+    return found if study.tuned is None else found | _loops(study) | _tuned(study)
 
 
 def check_json(study: Study) -> dict[str, Any]:

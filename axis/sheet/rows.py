@@ -139,7 +139,7 @@ def headline(study: Study) -> str:
         text = f"The load does not come to rest inside {window}."
     else:
         text = (
-            f"The load comes to rest inside {window} at all {settled.corners} computed corners, at the latest "
+            f"The load comes to rest inside {window} {_everywhere(settled.corners)}, at the latest "
             f"{_beside_the_end(slowest.worst.settling_time)}."
         )
     missed = [check for check in _all_checks(study) if check.verdict == "fail"]
@@ -151,6 +151,12 @@ def headline(study: Study) -> str:
     if open_:
         text += f" {_count(len(open_), 'check')} could not be evaluated."
     return text
+
+
+def _everywhere(corners: int) -> str:
+    return (
+        f"at all {corners} computed corners" if corners > 1 else "on the nominal axis, of which no tolerance is stated"
+    )
 
 
 def move_rows(study: Study) -> tuple[MoveRows, ...]:
@@ -169,7 +175,7 @@ def _one_move(study: Study, move: MoveVerdict, corners: int) -> MoveRows:
         number=move.number,
         title=f"Move {move.number}: {distance}" + (f", {stated.payload}" if stated.payload else ""),
         verdict=move.verdict,
-        sentence=f"keeps what it owes at {kept} of {corners} computed corners",
+        sentence=f"keeps what it owes at {kept} of {_count(corners, 'computed corner')}",
         worst_corner=corner_in_words(move.worst_corner),
         figures=tuple(_figures(move.nominal, move.worst, rotary)),
         checks=check_rows(move.checks, rotary),
@@ -287,6 +293,8 @@ def limit_sentences(study: Study) -> tuple[str, ...]:
         sentences.append(
             f"{corners} corners of the tolerances were simulated, the nominal axis among them. Passing at all of them "
             "is no guarantee for every value between or beyond them."
+            if corners > 1
+            else "Only the nominal axis was simulated: no [tolerance] is stated, and no machine is nominal."
         )
         if not study.settled.repeated:
             sentences.append(

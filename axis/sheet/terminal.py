@@ -41,7 +41,9 @@ def size_text(study: Study) -> str:
 
 
 def tune_text(study: Study) -> str:
-    """Settings with their origin, margins, and what they are compared with."""
+    """Settings with their origin, margins, and what they are compared with; nothing where none were found."""
+    if study.tuned is None:
+        return ""
     lines = ["", "What to set"]
     lines += _columns([(f"{row.name} {row.symbol}".rstrip(), row.text, row.origin) for row in setting_rows(study)])
     lines += ["", "Margins, smallest over the corners"]

@@ -286,3 +286,17 @@ def test_study_carries_every_part_it_prints():
     """A part added to the study must be thought of in the exit code as well."""
     parts = {field.name for field in fields(axis.study.Study)}
     assert parts == {"document", "axis", "sizing", "tuned", "settled", "unevaluated"}
+
+
+def test_margins_that_nothing_can_hold(capsys, ram):
+    """Not an error of the input: told as not evaluated, in JSON too, and nothing is written."""
+    wish = ("[loops]", '[tuning]\ngain_margin_up = "60 dB"\ngain_margin_down = "60 dB"\n\n[loops]')
+    path = ram(NO_TOLERANCE, wish)
+    before = path.read_text(encoding="utf-8")
+    found = result(capsys, 1, "tune", path, "--runs", "100", "--write")
+    assert found["verdict"] == "not evaluated"
+    assert found["unevaluated"].startswith("No settings are found: wish for smaller margins in [tuning]")
+    assert not {"margins", "loops"} & found.keys()  # the file's own settings are no result of this search
+    assert run(["tune", str(path), "--runs", "100"]) == 1
+    assert "No settings are found" in capsys.readouterr().out
+    assert path.read_text(encoding="utf-8") == before
