@@ -75,7 +75,7 @@ def tune(
     progress: Progress | None = None,
     executor: Executor | None = None,
 ) -> Study:
-    """Search settings; the study then carries them, and the verdict of the simulation under them."""
+    """Search settings; the study then carries them, the moves with their jerk, and the verdict under them."""
     from axis.tuning.tune import tune as tune_axis
 
     try:
@@ -84,10 +84,16 @@ def tune(
     except NotComputable as error:
         return replace(study, tuned=None, settled=None, unevaluated=f"{NO_DESIGN} ({error}).")
     stated = replace(study.document.axis, loops=tuned.loops)
-    document = replace(study.document, axis=stated)
-    return replace(
-        study, document=document, axis=complete(stated), tuned=tuned, settled=tuned.result.settled, unevaluated=""
+    found = replace(
+        study,
+        document=replace(study.document, axis=stated),
+        axis=complete(stated),
+        tuned=tuned,
+        settled=tuned.result.settled,
+        unevaluated="",
     )
+    # The moves now carry the jerk that was chosen: what was sized with another is sized again.
+    return found if study.sizing is None else size(found)
 
 
 def check(study: Study, progress: Progress | None = None, executor: Executor | None = None) -> Study:

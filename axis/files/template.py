@@ -71,6 +71,11 @@ peak_torque = "8.4 N*m"
 peak_current = "13 A"
 max_speed = "5000 rpm"
 encoder_counts = 1048576               # per revolution, after interpolation
+# max_winding_temperature = "140 degC" # these five give the winding temperature of the repeated cycle
+# winding_housing = "0.37 K/W"
+# housing_ambient = "0.76 K/W"
+# winding_time_constant = "60 s"
+# housing_time_constant = "35 min"
 
 [drive]
 # use = "DD-08"                        # a row of drives.csv
@@ -80,6 +85,11 @@ peak_time = "3 s"
 current_basis = "rms"
 supply_voltage = "400 V"
 supply_phases = 3
+# dc_link_max = "820 V"                # its trip; the next five give what becomes of the energy of braking
+# dc_link_capacitance = "470 uF"
+# chopper_on_voltage = "760 V"
+# braking_resistor_resistance = "60 ohm"
+# braking_resistor_power = "100 W"
 current_period = "62.5 us"
 velocity_period = "125 us"
 position_period = "250 us"

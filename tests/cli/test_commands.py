@@ -184,7 +184,8 @@ def small_demo(tmp_path, monkeypatch):
     shipped = tmp_path / "shipped"
     shutil.copytree(shipped_folder(), shipped)
     loops = TEXT[TEXT.index("[loops]") :]
-    (shipped / DEMO.name).write_text(changed(TEXT, NO_TOLERANCE, (loops, "")), encoding="utf-8")
+    jerk = 'jerk = "203.2 m/s^3"\n'
+    (shipped / DEMO.name).write_text(changed(TEXT, NO_TOLERANCE, (loops, ""), (jerk, "")), encoding="utf-8")
     monkeypatch.setattr("axis.files.catalogue.shipped_folder", lambda: shipped)
     return shipped / DEMO.name
 
@@ -201,6 +202,8 @@ def test_demo_writes_its_files_and_replaces_only_them(capsys, small_demo, tmp_pa
     first = {path.name: path.read_bytes() for path in folder.iterdir()}
     assert sorted(first) == ["carriage.toml", "settings-sheet.json", "settings-sheet.pdf"]
     assert b"[loops]" in first["carriage.toml"]
+    sized = result(capsys, 1, "size", folder / "carriage.toml")
+    assert json.loads(first["settings-sheet.json"])["demand"] == sized["demand"]  # with the jerk that was chosen
     (folder / "notes.txt").write_text("mine", encoding="utf-8")
     (folder / "carriage.toml").write_text("spoilt", encoding="utf-8")
     assert run(arguments) == 1

@@ -5,7 +5,6 @@ One tuning with the default budget serves the whole module.
 
 import json
 import shutil
-from dataclasses import replace
 
 import pytest
 
@@ -139,5 +138,4 @@ def test_settings_can_be_typed_into_a_drive(tuned):
 def test_a_study_after_tuning_says_the_jerk_it_moves_with(tuned):
     assert [move.jerk for move in tuned.axis.moves] == list(tuned.tuned.loops.move_jerk)
     resized = axis.size(tuned)
-    assert resized.sizing.verdict == "pass"
-    assert replace(resized, sizing=None).verdict == "pass"
+    assert (resized.sizing.verdict, resized.verdict) == ("pass", "pass")
