@@ -26,7 +26,8 @@ def judge(rule: Rule, corners: Sequence[Corner], trials: Trials) -> Check:
     check = Check(rule.id, rule.name, "not applicable", rule.source, unit=rule.unit)
     lacking = next((finding.missing for finding in findings if finding.missing), "")
     if lacking:
-        return replace(check, verdict="not evaluated", reason=f"{lacking} {'are' if ' and ' in lacking else 'is'} not stated")
+        verb = "are" if " and " in lacking else "is"
+        return replace(check, verdict="not evaluated", reason=f"{lacking} {verb} not stated")
     margins = [finding.margin for finding in findings]
     judged = [(margin, n) for n, margin in enumerate(margins) if margin is not None]
     if not judged:
