@@ -136,13 +136,16 @@ def tune(file: Path, catalogue: Path | None, as_json: bool, seed: int | None, ru
 
     Example: settlepoint tune my-axis.toml --write
     """
-    from axis.files.write import save_loops
+    from axis.files.write import refuse_unwritable, save_loops
     from axis.sheet.as_json import tune_json
     from axis.sheet.terminal import check_text, tune_text
     from axis.study import load
 
+    loaded = load(file, catalogue)
+    if write:
+        refuse_unwritable(file)
     with _progress() as progress:
-        study = _tuned(load(file, catalogue), seed, runs, progress)
+        study = _tuned(loaded, seed, runs, progress)
     _print(study, as_json, tune_json, lambda tuned: f"{tune_text(tuned)}\n{check_text(tuned)}")
     if write and study.tuned is not None:
         save_loops(file, study.document, study.tuned.loops)
@@ -180,7 +183,7 @@ def sheet(file: Path, catalogue: Path | None, output: Path, date: str | None) ->
 
     Example: settlepoint sheet my-axis.toml -o my-axis.pdf
     """
-    from axis.files.write import replace_file
+    from axis.files.write import refuse_unwritable, replace_file
     from axis.sheet.render import ENDINGS, render
     from axis.study import check as check_study
     from axis.study import load
@@ -190,8 +193,7 @@ def sheet(file: Path, catalogue: Path | None, output: Path, date: str | None) ->
         raise click.BadParameter(f"'{output}' must end in {' or '.join(ENDINGS)}", param_hint="-o")
     if output.exists() and file.exists() and output.samefile(file):
         raise click.BadParameter(f"'{output}' is the axis file itself; name another file", param_hint="-o")
-    if not output.absolute().parent.is_dir():  # told before the work, not after it
-        raise CannotWrite(f"{output} cannot be written (there is no folder {output.parent})")
+    refuse_unwritable(output)
     with _progress() as progress:
         study = check_study(size_study(load(file, catalogue)), progress)
     replace_file(output, render(study, output.suffix.lower(), date))

@@ -35,8 +35,7 @@ def replace_file(path: Path, data: bytes, digest: str | None = None) -> None:
     try:
         if digest is not None and path.exists() and digest_of(path.read_bytes()) != digest:
             raise CannotWrite(f"{path} has changed since it was read; nothing was written. Read it again first.")
-        if path.is_dir():
-            raise CannotWrite(f"{path} is a folder; nothing was written.")
+        refuse_unwritable(path)
         target = path.resolve() if path.is_symlink() else path
         handle, name = tempfile.mkstemp(prefix=f".{target.name[:60]}.", suffix=".part", dir=target.parent)
         try:
@@ -53,6 +52,19 @@ def replace_file(path: Path, data: bytes, digest: str | None = None) -> None:
     except OSError as error:
         reason = error.strerror or error
         raise CannotWrite(f"{path} cannot be written ({reason}); whatever stood there is whole.") from None
+
+
+def refuse_unwritable(path: Path) -> None:
+    """CannotWrite where a file could not be put there; asked before long work, so that it is not done in vain."""
+    folder = path.absolute().parent
+    if path.is_dir():
+        raise CannotWrite(f"{path} is a folder; nothing was written.")
+    if not folder.is_dir():
+        raise CannotWrite(f"{path} cannot be written (there is no folder {folder}); nothing was written.")
+    # A file that nobody may write was protected on purpose, though a new one could take its place.
+    protected = path.exists() and not (path.stat().st_mode & 0o222 and os.access(path, os.W_OK))
+    if protected or not os.access(folder, os.W_OK):
+        raise CannotWrite(f"{path} cannot be written (it is read-only); nothing was written.")
 
 
 def make_folder(path: Path) -> None:

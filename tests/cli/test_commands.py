@@ -218,7 +218,11 @@ def test_what_cannot_be_written_is_a_sentence_and_code_3(capsys, ram, tmp_path):
     file.write_text("mine", encoding="utf-8")
     folder = tmp_path / "folder.pdf"
     folder.mkdir()
+    protected = tmp_path / "protected.toml"
+    protected.write_text(path.read_text(encoding="utf-8"), encoding="utf-8")
+    protected.chmod(0o444)
     for arguments in (
+        ["tune", str(protected), "--write"],
         ["new", str(tmp_path / "absent" / "new.toml")],
         ["sheet", str(path), "-o", str(tmp_path / "absent" / "sheet.pdf")],
         ["sheet", str(path), "-o", str(folder)],
@@ -232,7 +236,8 @@ def test_what_cannot_be_written_is_a_sentence_and_code_3(capsys, ram, tmp_path):
         assert "cannot" in err or "is a folder" in err
         assert "internal" not in err
     assert file.read_text(encoding="utf-8") == "mine"
-    assert sorted(one.name for one in tmp_path.iterdir()) == ["axis.toml", "file", "folder.pdf"]
+    assert sorted(one.name for one in tmp_path.iterdir()) == ["axis.toml", "file", "folder.pdf", "protected.toml"]
+    assert protected.read_bytes() == path.read_bytes()
 
 
 def test_a_file_edited_meanwhile_is_not_overwritten(capsys, ram, monkeypatch):
