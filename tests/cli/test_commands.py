@@ -3,6 +3,7 @@
 import json
 import math
 import shutil
+import socket
 from dataclasses import fields
 
 import pytest
@@ -308,3 +309,13 @@ def test_margins_that_nothing_can_hold(capsys, ram):
     assert run(["tune", str(path), "--runs", "100"]) == 1
     assert "No settings are found" in capsys.readouterr().out
     assert path.read_text(encoding="utf-8") == before
+
+
+def test_app_on_a_port_that_is_taken(capsys):
+    with socket.socket() as taken:
+        taken.bind(("127.0.0.1", 0))
+        taken.listen()
+        port = taken.getsockname()[1]
+        assert run(["app", "--no-browser", "--port", str(port)]) == 3
+    out, err = capsys.readouterr()
+    assert (out, err) == ("", f"port {port} is in use; name another with --port\n")
