@@ -23,7 +23,7 @@ if TYPE_CHECKING:
     from axis.tuning.result import Tuned
 
 DEFAULT_SEED = 1
-DEFAULT_RUNS = 4_000
+DEFAULT_RUNS = 3_500
 
 NO_LOOPS = "Whether it settles is not evaluated: the file has no [loops]. Next: settlepoint tune --write FILE"
 NO_DESIGN = (
