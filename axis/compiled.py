@@ -45,7 +45,6 @@ def cache_folder(candidates: list[Path]) -> Path | None:
 def _gate() -> tuple[Callable[[Any], Any], Callable[[Any], Any], Path | None]:
     if UNCOMPILED:
         return (lambda function: function), (lambda function: function), None
-    os.environ.setdefault("NUMBA_OPT", "1")  # compiles a fifth faster than numba's own level, and runs as fast
     import numba
     from numba.extending import register_jitable
     from platformdirs import user_cache_path
