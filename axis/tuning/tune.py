@@ -70,7 +70,7 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     search = Objective(axis, bare, _first_corners(every), extreme_plants(axis), longest_dwell=brief)
     everywhere = Objective(axis, bare, every, [plant for _, plant in margin_corners(axis, SHARES)])
     started = _designed(axis, bare, search, compiled)
-    designed = rounded(started.loops)
+    designed = rounded(started.loops, axis.stated.rotary)
     path = [_step(f"designed: prototype of order {started.order}", axis, designed, executor)]
     looks = [_look(designed, everywhere, executor)]
     stopped = ""
@@ -82,7 +82,7 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     except Stopped:
         stopped = ", stopped"
     best = min(looks, key=lambda look: look.score)
-    looks.append(_look(rounded(_textbook(axis, best.loops, search)), everywhere, executor))
+    looks.append(_look(rounded(_textbook(axis, best.loops, search), axis.stated.rotary), everywhere, executor))
     result = _verified(axis, looks, executor)
     holds = margins_everywhere(axis, result.loops)
     path.append(_as_step(f"searched{stopped}: {search.runs} simulated cycles, seed {seed}", axis, result))
@@ -159,7 +159,7 @@ def _search(
             tell(share, _in_words(population.scores[population.best], len(search.corners)))
             if search.runs >= runs:
                 break
-        candidate = rounded(unknowns.loops(population.points[population.best]))
+        candidate = rounded(unknowns.loops(population.points[population.best]), unknowns.axis.stated.rotary)
         if candidate == last:
             continue
         last = candidate

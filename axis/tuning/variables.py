@@ -142,14 +142,17 @@ def _notch(plant: ShaftPlant, empty: ShaftPlant, nyquist: float) -> list[Variabl
     ]
 
 
-def rounded(loops: Loops) -> Loops:
-    """The settings with the digits a person types into a drive, frequencies rounded in hertz."""
+def rounded(loops: Loops, rotary: bool = False) -> Loops:
+    """The settings with the digits a person types: frequencies in hertz, the jerk of a turning axis in degrees."""
 
     def keep(value: float) -> float:
         return float(f"{value:.{DIGITS}g}")
 
     def hertz(value: float) -> float:
         return 2.0 * math.pi * keep(value / (2.0 * math.pi))
+
+    def jerk(value: float) -> float:
+        return math.radians(keep(math.degrees(value))) if rotary else keep(value)
 
     return Loops(
         current=replace(loops.current, kp=keep(loops.current.kp), ti=keep(loops.current.ti)),
@@ -170,5 +173,5 @@ def rounded(loops: Loops) -> Loops:
             )
             for one in loops.filters
         ),
-        move_jerk=None if loops.move_jerk is None else tuple(keep(jerk) for jerk in loops.move_jerk),
+        move_jerk=None if loops.move_jerk is None else tuple(jerk(value) for value in loops.move_jerk),
     )
