@@ -66,11 +66,6 @@ class Cycle:
     moves: Array  # (moves, MOVE_SIZE)
 
 
-def plant_vector(plant: ShaftPlant) -> Array:
-    """The plant as the kernel reads it."""
-    return np.array(astuple(plant), dtype=np.float64)
-
-
 def plants_matrix(plants: Sequence[ShaftPlant]) -> Array:
     """One row a move."""
     return np.array([astuple(plant) for plant in plants], dtype=np.float64)

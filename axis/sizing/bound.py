@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 from bisect import bisect_right
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import accumulate, pairwise
 
@@ -27,19 +27,22 @@ _SHORT_OF_LIMIT = 1e-6  # of a speed that torque allows to be approached but not
 _ITERATIONS = 200  # enough to halve any bracket down to one float
 
 
-def bounds(axis: CompletedAxis, corner: Mapping[str, float]) -> tuple[float, float]:
-    """Sum over the moves, at one corner, of the bound under the user's limits and of the machine's own bound.
+def bounds(axis: CompletedAxis, corners: Sequence[Mapping[str, float]]) -> tuple[float, float]:
+    """Sum over the moves, each at its own corner, of the bound under the user's limits and of the machine's own bound.
 
     Parameters
         axis: nominal
-        corner [1]: tolerance name to signed share
+        corners [1]: one a move, tolerance name to signed share
     Returns [s], [s]
     Σ `move_bound`
     Source: [own]
     """
-    there = at_corner(axis, corner)
-    own = sum(move_bound(there, move) for move in there.moves)
-    return own, sum(move_bound(there, move, own_limits=False) for move in there.moves)
+    own = machine = 0.0
+    for n, corner in enumerate(corners):
+        there = at_corner(axis, corner)
+        own += move_bound(there, there.moves[n])
+        machine += move_bound(there, there.moves[n], own_limits=False)
+    return own, machine
 
 
 def move_bound(axis: CompletedAxis, move: CompletedMove, own_limits: bool = True) -> float:

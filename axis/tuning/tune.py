@@ -9,7 +9,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from axis.completion import CompletedAxis, at_corner
+from axis.completion import CompletedAxis
 from axis.description.corners import SHARES, corners
 from axis.description.settings import Loops
 from axis.errors import NotComputable, Stopped
@@ -18,7 +18,7 @@ from axis.loops.start import Designed, designed_start
 from axis.loops.textbook import textbook_settings
 from axis.settling.check import check
 from axis.simulation.ahead import compile_ahead
-from axis.sizing.bound import move_bound
+from axis.sizing.bound import bounds
 from axis.tuning.evolution import Population, generations
 from axis.tuning.objective import VIOLATION_SCORE, Corner, Objective, extreme_plants, margin_corners
 from axis.tuning.reference import judged, margins_everywhere
@@ -87,12 +87,13 @@ def tune(axis: CompletedAxis, seed: int, runs: int, progress: Progress | None, e
     holds = margins_everywhere(axis, result.loops)
     path.append(_as_step(f"searched{stopped}: {search.runs} simulated cycles, seed {seed}", axis, result))
     textbook = _textbook(axis, result.loops, search)
+    bound, machine_bound = bounds(axis, [move.worst_corner for move in result.settled.moves])
     return Tuned(
         result=result,
         textbook=judged(axis, textbook, check(axis, textbook, None, executor)),
         path=tuple(path),
-        bound=_bound(axis, result, own_limits=True),
-        machine_bound=_bound(axis, result, own_limits=False),
+        bound=bound,
+        machine_bound=machine_bound,
         seed=seed,
         runs=search.runs,
         margins_hold=holds,
@@ -214,15 +215,6 @@ def _textbook(axis: CompletedAxis, loops: Loops, search: Objective) -> Loops:
     lag = velocity_loop_lags(axis.motor.inductance, rates, loops.current, loops.velocity.filter, loops.filters).total
     plants = [search.sampled(plant) for plant in extreme_plants(axis)]
     return textbook_settings(loops, inertia, lag, plants, axis.stated.tuning, torque_share=1.0).loops
-
-
-def _bound(axis: CompletedAxis, found: Reference, own_limits: bool) -> float:
-    """[s] Sum of the rigid axis's fastest moves, each at the corner that is worst for it."""
-    total = 0.0
-    for n, move in enumerate(found.settled.moves):
-        there = at_corner(axis, move.worst_corner)
-        total += move_bound(there, there.moves[n], own_limits)
-    return total
 
 
 def _step(name: str, axis: CompletedAxis, loops: Loops, executor: Executor) -> Step:

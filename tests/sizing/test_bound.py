@@ -19,6 +19,11 @@ WINDOW = 25e-6
 SMOOTH = Load(mass=38.0, friction=Friction(coulomb=0.0))
 
 
+def bounds_at(axis, corner):
+    """Every move at the same corner."""
+    return bounds(axis, [corner] * len(axis.moves))
+
+
 def free(**changes):
     """A screw axis without any loss, on a bus that never limits."""
     screw = replace(
@@ -175,7 +180,7 @@ def test_bang_bang_in_time_ends_at_the_far_edge():
 def test_bounds_are_below_what_the_set_point_does(seed):
     """No move under the same limits is in its window earlier; the machine alone is no slower."""
     axis = completed(replace(random_axis(seed), tolerance=Tolerance()))
-    own, machine = bounds(axis, {})
+    own, machine = bounds_at(axis, {})
     assert machine <= own * (1.0 + 1e-9)
     commanded = 0.0
     for move in axis.moves:
@@ -188,8 +193,8 @@ def test_bounds_are_below_what_the_set_point_does(seed):
 def test_worse_corners_take_longer():
     axis = completed()
     corner = {"load_mass": 0.05, "friction": 0.4, "torque_constant": -0.05, "supply_voltage": -0.1}
-    worse, better = bounds(axis, corner), bounds(axis, {name: -share for name, share in corner.items()})
-    assert worse[1] > bounds(axis, {})[1] > better[1]
+    worse, better = bounds_at(axis, corner), bounds_at(axis, {name: -share for name, share in corner.items()})
+    assert worse[1] > bounds_at(axis, {})[1] > better[1]
     assert worse[1] == pytest.approx(
         sum(move_bound(at_corner(axis, corner), move, own_limits=False) for move in at_corner(axis, corner).moves)
     )
@@ -197,4 +202,4 @@ def test_worse_corners_take_longer():
 
 def test_axis_that_cannot_be_hoisted_has_no_bound():
     heavy = replace(CARRIAGE, head=replace(CARRIAGE.head, incline=math.pi / 2.0), load=Load(mass=4000.0))
-    assert math.isinf(bounds(completed(heavy), {})[1])
+    assert math.isinf(bounds_at(completed(heavy), {})[1])
